@@ -1,0 +1,23 @@
+"""Pictures of paper, and the millimetre grid on them. Knows nothing of Qt or of `app`.
+
+The heavy libraries are loaded inside the functions that need them, so that importing
+this package costs little and the window appears quickly.
+"""
+
+from imaging.errors import GridNotFound, PictureError, SmallsquareError
+from imaging.lattice import find_grid
+from imaging.picture import Picture, open_picture, picture_from_bytes
+from imaging.sheet_map import Coverage, SheetMap, sheet_map_from_box
+
+__all__ = [
+    "Coverage",
+    "GridNotFound",
+    "Picture",
+    "PictureError",
+    "SheetMap",
+    "SmallsquareError",
+    "find_grid",
+    "open_picture",
+    "picture_from_bytes",
+    "sheet_map_from_box",
+]
