@@ -47,8 +47,8 @@ class Coverage:
         cells = self.cells()
         if cells.ndim != 2 or cells.size == 0:
             return np.zeros(len(points_px), dtype=bool)
-        known = np.isfinite(points_px).all(axis=1)
-        place = np.floor((np.where(known[:, None], points_px, -9.0) + 0.5) / self.cell_px)
+        known: BoolArray = np.asarray(np.isfinite(points_px).all(axis=1))
+        place = np.floor((np.where(known[:, np.newaxis], points_px, -9.0) + 0.5) / self.cell_px)
         column, row = place[:, 0].astype(np.int64), place[:, 1].astype(np.int64)
         inside = known & (row >= 0) & (column >= 0)
         inside &= (row < cells.shape[0]) & (column < cells.shape[1])
