@@ -17,6 +17,8 @@ from imaging.errors import SmallsquareError
 FILE_KIND = "smallsquare reading"
 SCHEMA_VERSION = 1
 SUFFIX = ".reading.json"
+# Only POSIX lets a folder be opened; elsewhere the rename is as safe as it gets.
+_CAN_SYNC_FOLDERS = os.name == "posix"
 LARGEST_FILE_BYTES = 64 * 1024 * 1024
 
 _log = logging.getLogger(__name__)
@@ -147,8 +149,7 @@ def _take_over_mode(path: Path, temporary: Path) -> None:
 
 
 def _sync_folder(folder: Path) -> None:
-    # Only POSIX lets a folder be opened; elsewhere the rename is as safe as it gets.
-    if os.name != "posix":
+    if not _CAN_SYNC_FOLDERS:
         return
     handle = os.open(folder, os.O_RDONLY)
     try:

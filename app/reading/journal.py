@@ -33,7 +33,8 @@ def append_to_journal(reading_path: Path, reading: Reading) -> None:
     ReadingFileError
         If the folder or disk refuses.
     """
-    line = json.dumps(reading_to_json(reading), ensure_ascii=False, allow_nan=False) + "\n"
+    # A line break before as well: the line before may have been cut short.
+    line = f"\n{json.dumps(reading_to_json(reading), ensure_ascii=False, allow_nan=False)}\n"
     try:
         with journal_path(reading_path).open("ab") as file:
             file.write(line.encode("utf-8"))
