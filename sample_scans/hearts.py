@@ -92,14 +92,14 @@ def fibrillating_heart() -> Heart:
 
 
 def wide_qrs_heart() -> Heart:
-    """PR 172, QRS 148, QT 442 ms, axis -18 degrees: notched R in the left leads."""
+    """PR 172, QRS 148, QT 442 ms, axis -8 degrees: notched R in the left leads."""
     notched = ((0.0, 0.0), (54.0, 1.0), (76.0, 0.74), (98.0, 0.93), (148.0, 0.0))
     deep = ((0.0, 0.0), (26.0, 0.3), (72.0, 1.0), (148.0, 0.0))
     both = (True, True)
     return Heart(
         (
             *_atrial(172.0, 50.0),
-            Wave("R", notched, 1.05, -18.0, _chest(0.0, 0.0, 0.0, 0.0, 0.9, 1.15), both),
+            Wave("R", notched, 1.05, -8.0, _chest(0.0, 0.0, 0.0, 0.0, 0.9, 1.15), both),
             Wave("S", deep, chest_mv=_chest(-1.0, -1.45, -1.3, 0.0, 0.0, 0.0), crisp=both),
             Wave("R", _bump(0.0, 24.0, 48.0), chest_mv={"V4": 0.4}, crisp=(True, False)),
             Wave("S", _bump(48.0, 84.0, 148.0), chest_mv={"V4": -0.8}, crisp=(False, True)),
@@ -109,6 +109,6 @@ def wide_qrs_heart() -> Heart:
 
 
 def large_voltage_heart() -> Heart:
-    """PR 156, QRS 92, QT 392 ms, axis +12 degrees: chest leads too tall for full gain."""
-    t = _recovery(140.0, 306.0, 392.0, 0.2, 60.0, 0.2, 0.7, 0.75, 0.4, -0.25, -0.3)
+    """PR 156, QRS 92, QT 418 ms, axis +12 degrees: chest leads too tall for full gain."""
+    t = _recovery(140.0, 326.0, 418.0, 0.2, 60.0, 0.2, 0.7, 0.75, 0.4, -0.25, -0.3)
     return Heart((*_atrial(156.0, 48.0), *_narrow_qrs(12.0, 1.3, 2.2), t))
