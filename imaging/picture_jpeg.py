@@ -135,10 +135,10 @@ def _decode_rgb(data: bytes) -> NDArray[np.uint8]:
     import cv2
     import numpy as np
 
-    pixels = cv2.imdecode(np.frombuffer(data, np.uint8), cv2.IMREAD_COLOR)
+    pixels = cv2.imdecode(np.frombuffer(data, np.uint8), cv2.IMREAD_COLOR_RGB)
     if pixels is None:
         raise Refused(DAMAGED)
-    return np.asarray(cv2.cvtColor(pixels, cv2.COLOR_BGR2RGB, dst=pixels), dtype=np.uint8)
+    return np.asarray(pixels, dtype=np.uint8)
 
 
 def _may_be_painted_grey(pixels: NDArray[np.uint8]) -> bool:
