@@ -1,0 +1,1 @@
+"""One class for each thing a hand does on the canvas."""

@@ -1,0 +1,50 @@
+"""How much of the drawn line lies in a box of the picture: labels keep clear of it. No Qt."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+Box = tuple[float, float, float, float]
+
+_STEP_PX = 4
+_DARKER_THAN_PAPER = 110  # common practice, no source: pen ink, not the printed grid
+
+
+class InkMap:
+    """Shares of dark pixels in boxes, each in constant time.
+
+    Parameters
+    ----------
+    pixels : ndarray of uint8, shape (height, width, 3)
+        Not modified. Every second pixel is looked at and the darkest of 4 by 4 counts, so that
+        a thin pen is not missed; of the channels the brightest, because a coloured grid is
+        bright in its own.
+
+    Notes
+    -----
+    A summed-area table: Crow, "Summed-area tables for texture mapping", SIGGRAPH 1984.
+    """
+
+    def __init__(self, pixels: NDArray[np.uint8]) -> None:
+        sampled = pixels[::2, ::2]
+        brightest = np.maximum(np.maximum(sampled[..., 0], sampled[..., 1]), sampled[..., 2])
+        rows, columns = (length // 2 * 2 for length in brightest.shape)
+        blocks = brightest[:rows, :columns].reshape(rows // 2, 2, columns // 2, 2)
+        darkest = blocks.min(axis=(1, 3))
+        paper = int(np.percentile(darkest, 80)) if darkest.size else 255
+        ink = darkest < paper - _DARKER_THAN_PAPER
+        self._sums = np.zeros((ink.shape[0] + 1, ink.shape[1] + 1), dtype=np.int64)
+        self._sums[1:, 1:] = ink.cumsum(axis=0).cumsum(axis=1)
+
+    def share(self, box_px: Box) -> float:
+        """The share, 0 to 1, of a box (left, top, right, bottom) in picture_px that is inked."""
+        rows, columns = self._sums.shape[0] - 1, self._sums.shape[1] - 1
+        left, right = (min(max(round(x / _STEP_PX), 0), columns) for x in box_px[::2])
+        top, bottom = (min(max(round(y / _STEP_PX), 0), rows) for y in box_px[1::2])
+        area = (right - left) * (bottom - top)
+        if area <= 0:
+            return 0.0
+        sums = self._sums
+        inked = sums[bottom, right] - sums[top, right] - sums[bottom, left] + sums[top, left]
+        return float(inked / area)

@@ -1,0 +1,58 @@
+"""Put what was laid out on the screen; nothing is measured or laid out here."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+
+from PySide6.QtCore import QLineF, QRectF
+from PySide6.QtGui import QBrush, QColor, QPainter, QPen
+
+from app.window.canvas import look
+from app.window.canvas.overlay import Drawn
+
+
+def paint_calipers(painter: QPainter, drawn: Iterable[Drawn], exposed: QRectF) -> None:
+    """Draw those that touch the exposed part; labels last, above every line."""
+    shown = [item for item in drawn if item.bounds.intersects(exposed)]
+    if not shown:
+        return
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+    for chosen, style in ((False, look.PLAIN), (True, look.CHOSEN)):
+        paint_lines(
+            painter, [line for item in shown if item.chosen is chosen for line in item.lines], style
+        )
+    paint_lines(painter, [line for item in shown for line in item.held_lines], look.HELD)
+    _paint_handles(painter, shown)
+    for item in shown:
+        if item.label is not None:
+            painter.drawPixmap(*item.label)
+
+
+def paint_lines(painter: QPainter, lines: list[QLineF], style: look.LineLook) -> None:
+    """Lines with their rim."""
+    if lines:
+        painter.setPen(style.rim)
+        painter.drawLines(lines)
+        painter.setPen(style.pen)
+        painter.drawLines(lines)
+
+
+def _paint_handles(painter: QPainter, shown: Iterable[Drawn]) -> None:
+    radius = look.HANDLE_RADIUS_PX
+    for item in shown:
+        if not item.handles:
+            continue
+        painter.setPen(QPen(look.ORANGE, 1.6))
+        painter.setBrush(QBrush(look.ORANGE if item.held_lines else QColor("white")))
+        for place in item.handles:
+            painter.drawEllipse(place, radius, radius)
+
+
+def paint_box(painter: QPainter, box: QRectF) -> None:
+    """A box being drawn, in canvas px."""
+    painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+    painter.setBrush(QColor(184, 67, 11, 28))
+    painter.setPen(look.CHOSEN.rim)
+    painter.drawRect(box)
+    painter.setPen(look.box_pen())
+    painter.drawRect(box)
