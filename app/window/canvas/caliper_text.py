@@ -19,11 +19,15 @@ def quantity_name(kind: CaliperKind, key: str | None) -> str:
     return key if known is None else known.label
 
 
+def short_name(caliper: Caliper) -> str:
+    """ "QRS", or "Comb ×5"."""
+    name = quantity_name(caliper.kind, caliper.quantity)
+    return f"{name} ×{caliper.teeth}" if caliper.kind is CaliperKind.COMB else name
+
+
 def caliper_name(caliper: Caliper) -> str:
     """ "QRS II·1": what, in which lead, which beat."""
-    name = quantity_name(caliper.kind, caliper.quantity)
-    if caliper.kind is CaliperKind.COMB:
-        name += f" ×{caliper.teeth}"
+    name = short_name(caliper)
     if caliper.lead is not None:
         name += f" {caliper.lead}"
     if caliper.beat is not None:

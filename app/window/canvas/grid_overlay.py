@@ -11,7 +11,8 @@ from PySide6.QtGui import QPainter, QPainterPath
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
 from app.window.canvas import look
-from imaging.sheet_map import SheetMap
+from app.window.canvas.ink_map import Box
+from imaging.sheet_map import FloatArray, SheetMap
 
 THIN_FROM_VIEW_PX_PER_MM = 5.0
 _BLOCK_PX = 512
@@ -78,37 +79,45 @@ class GridOverlay(QGraphicsItem):
         return self._blocks[column, row]
 
 
-def lattice_paths(
-    sheet_map: SheetMap, box_px: tuple[float, float, float, float]
-) -> tuple[QPainterPath, QPainterPath]:
+def lattice_paths(sheet_map: SheetMap, box_px: Box) -> tuple[QPainterPath, QPainterPath]:
     """Bold and thin lattice lines within an upright box of the picture, where covered."""
     left, top, right, bottom = box_px
     corners_px = np.array([[left, top], [right, top], [right, bottom], [left, bottom]])
     corners_mm = sheet_map.to_mm(corners_px)
-    step_mm = sheet_map.coverage.cell_px / 2.0 / sheet_map.x_pitch_px_per_mm
+    steps_px = np.array([sheet_map.x_step_px, sheet_map.y_step_px])
     paths = QPainterPath(), QPainterPath()
     for axis in (0, 1):
         low, high = corners_mm[:, axis].min(), corners_mm[:, axis].max()
-        other_low, other_high = corners_mm[:, 1 - axis].min(), corners_mm[:, 1 - axis].max()
-        along_mm = np.arange(other_low, other_high + step_mm, step_mm)
         for line_mm in range(math.ceil(low), math.floor(high) + 1):
-            points_mm = np.empty((len(along_mm), 2))
-            points_mm[:, axis], points_mm[:, 1 - axis] = line_mm, along_mm
-            points_px = sheet_map.to_px(points_mm)
-            seen = sheet_map.covers(points_px) & _inside(points_px, box_px)
-            _add_runs(paths[0 if line_mm % 5 == 0 else 1], points_px, seen)
+            through_px = np.asarray(sheet_map.origin_px) + line_mm * steps_px[axis]
+            points_px = _clipped_line(through_px, steps_px[1 - axis], box_px, sheet_map)
+            path = paths[0 if line_mm % 5 == 0 else 1]
+            _add_runs(path, points_px, sheet_map.covers(points_px))
     return paths
 
 
-def _inside(
-    points_px: NDArray[np.float64], box_px: tuple[float, float, float, float]
-) -> NDArray[np.bool_]:
-    low, high = np.array(box_px[:2]), np.array(box_px[2:])
-    inside: NDArray[np.bool_] = (points_px >= low) & (points_px <= high)
-    return inside[:, 0] & inside[:, 1]
+def _clipped_line(
+    through_px: FloatArray, along_px: FloatArray, box_px: Box, sheet_map: SheetMap
+) -> FloatArray:
+    """Points on a line from edge to edge of a box, close enough to meet every coverage cell."""
+    enter, leave = -math.inf, math.inf
+    for axis in (0, 1):
+        if along_px[axis] == 0.0:
+            if not box_px[axis] <= through_px[axis] <= box_px[axis + 2]:
+                return np.empty((0, 2))
+            continue
+        edges = (np.array([box_px[axis], box_px[axis + 2]]) - through_px[axis]) / along_px[axis]
+        enter, leave = max(enter, edges.min()), min(leave, edges.max())
+    if enter >= leave:
+        return np.empty((0, 2))
+    length_px = (leave - enter) * math.hypot(*along_px)
+    count = 2 + math.ceil(2.0 * length_px / sheet_map.coverage.cell_px)
+    points_px = through_px + np.linspace(enter, leave, count)[:, np.newaxis] * along_px
+    # Just inside: the edge itself belongs to the next cell, which may not exist.
+    return np.clip(points_px, np.array(box_px[:2]) + 1e-6, np.array(box_px[2:]) - 1e-6)
 
 
-def _add_runs(path: QPainterPath, points_px: NDArray[np.float64], seen: NDArray[np.bool_]) -> None:
+def _add_runs(path: QPainterPath, points_px: FloatArray, seen: NDArray[np.bool_]) -> None:
     """A straight piece for each run of points that were seen."""
     edges = np.flatnonzero(np.diff(np.concatenate(([False], seen, [False])).astype(np.int8)))
     for first, after in zip(edges[::2], edges[1::2], strict=True):

@@ -14,11 +14,13 @@ from app.window.canvas.shape import Segment
 Size = tuple[float, float]
 
 _GAP_PX = 4.0
-_INK_COST = 30.0
+_INK_COST = 120.0
 _OVERLAP_COST = 100.0
-_SHORT_COST = 4.0
-_SHIFT_COST = 1.0
-_STACK_COST = 3.0
+_OTHER_BAR_COST = 6.0
+_OTHER_SLOT_COST = 5.0
+_SHORT_COST = 2.0
+_SHIFT_COST = 4.0
+_STACK_COST = 5.0
 _DROPPED_FROM = 60.0
 
 
@@ -60,6 +62,9 @@ def place_labels(
 ) -> dict[int, LabelPlace]:
     """A place for each caliper's label; a label with no room is left out.
 
+    Each keeps off the others' bars and off the slot outside each bar where the shortest
+    label of that one would stand: in a crowd all become short and none wanders off.
+
     Parameters
     ----------
     requests : sequence of LabelRequest
@@ -69,8 +74,13 @@ def place_labels(
     """
     taken: list[Box] = []
     places: dict[int, LabelPlace] = {}
+    kept_clear = {
+        request.caliper_id: (_bar_box(request.bar), _box(request, request.sizes[-1], 0.0, 0.0))
+        for request in requests
+    }
     for request in sorted(requests, key=lambda item: not item.must_show):
-        best_cost, best_box, best_index = _best(request, taken, ink_share)
+        others = [kept for key, kept in kept_clear.items() if key != request.caliper_id]
+        best_cost, best_box, best_index = _best(request, taken, others, ink_share)
         if best_cost >= _DROPPED_FROM and not request.must_show:
             continue
         taken.append(best_box)
@@ -85,7 +95,10 @@ def centred_place(request: LabelRequest) -> LabelPlace:
 
 
 def _best(
-    request: LabelRequest, taken: Sequence[Box], ink_share: Callable[[Box], float]
+    request: LabelRequest,
+    taken: Sequence[Box],
+    others: Sequence[tuple[Box, Box]],
+    ink_share: Callable[[Box], float],
 ) -> tuple[float, Box, int]:
     options: list[tuple[float, Box, int]] = []
     sizes = request.sizes[:1] if request.must_show else request.sizes
@@ -96,12 +109,19 @@ def _best(
                 cost = index * _SHORT_COST + abs(shift) * _SHIFT_COST + stack * _STACK_COST
                 cost += _INK_COST * ink_share(box)
                 cost += _OVERLAP_COST * sum(_shared(box, other) for other in taken)
+                for bar, slot in others:
+                    cost += _OTHER_BAR_COST * (_shared(box, bar) > 0.0)
+                    cost += _OTHER_SLOT_COST * (_shared(box, slot) > 0.0)
                 options.append((cost, box, index))
     return min(options)
 
 
 def _box(request: LabelRequest, size: Size, shift: float, stack: float) -> Box:
-    """A label outside the bar: `shift` -1, 0, 1 along it, `stack` heights further out."""
+    """A label outside the bar.
+
+    `shift` -1, 0 or 1 moves it along the bar, `stack` one or two heights further out; beside
+    an upright bar the shifts go past its ends.
+    """
     x1, y1, x2, y2 = request.bar
     width, height = size
     out_x, out_y = request.outward
@@ -109,11 +129,19 @@ def _box(request: LabelRequest, size: Size, shift: float, stack: float) -> Box:
     if abs(out_y) >= abs(out_x):
         centre_x += shift * max(abs(x2 - x1) / 2.0, width / 2.0)
         centre_y += out_y * (height / 2.0 + _GAP_PX + stack * (height + 2.0))
+    elif shift == 0.0:
+        centre_x += out_x * (width / 2.0 + _GAP_PX + stack * width / 4.0)
     else:
-        centre_x += out_x * (width / 2.0 + _GAP_PX)
-        centre_y += (shift + 2.0 * shift * stack) * (height / 2.0 + 1.0)
+        centre_x += out_x * width / 4.0
+        reach = abs(y2 - y1) / 2.0 + height / 2.0 + 2.0 * _GAP_PX
+        centre_y += shift * (reach + stack * (height + 2.0))
     left, top = centre_x - width / 2.0, centre_y - height / 2.0
     return left, top, left + width, top + height
+
+
+def _bar_box(bar: Segment) -> Box:
+    x1, y1, x2, y2 = bar
+    return min(x1, x2) - 1.0, min(y1, y2) - 1.0, max(x1, x2) + 1.0, max(y1, y2) + 1.0
 
 
 def _shared(one: Box, other: Box) -> float:

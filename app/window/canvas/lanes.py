@@ -12,7 +12,7 @@ from app.window.canvas.shape import Lane, caliper_shape
 _DISTANCES_MM = (5.0, 9.0, 13.0, 17.0, 21.0)
 _LABEL_MM = 3.6  # room for the label along the outward direction, at a middling zoom
 _MARGIN_MM = 0.6
-_INK_COST = 40.0
+_INK_COST = 80.0
 _OVERLAP_COST = 60.0
 _LEAVES_PICTURE_COST = 200.0
 
@@ -28,7 +28,7 @@ def choose_lanes(
             (_cost(caliper, frame, lane, ink, taken), number, lane)
             for number, lane in enumerate(_candidates(caliper.kind))
         ]
-        _, _, best = min(options)[0:3]
+        best = min(options, key=lambda option: option[:2])[2]
         lanes[caliper.caliper_id] = best
         taken.append(_bar_box(caliper, frame, best))
     return lanes

@@ -14,7 +14,7 @@ from PySide6.QtGui import QColor, QFont, QPen
 DESK = QColor("#d5dbde")
 TEAL = QColor("#0b5563")
 ORANGE = QColor("#b8430b")
-RIM = QColor(255, 255, 255, 185)
+RIM = QColor(255, 255, 255, 140)
 PLATE = QColor(250, 253, 253, 238)
 PLATE_EDGE = QColor("#7fa6ad")
 ON_ORANGE = QColor("#ffffff")

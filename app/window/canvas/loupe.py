@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Sequence
+
 from PySide6.QtCore import QLineF, QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QPainter, QPaintEvent, QPen, QPixmap, QTransform
 from PySide6.QtWidgets import QWidget
@@ -30,20 +33,16 @@ class Loupe(QWidget):
         self._arms: list[QLineF] = []
 
     def show_place(
-        self,
-        pixmap: QPixmap,
-        aim: QPointF,
-        view_transform: QTransform,
-        zoom: float,
-        arms: list[QLineF],
+        self, pixmap: QPixmap, aim: QPointF, view_transform: QTransform, arms: list[QLineF]
     ) -> None:
         """Magnify around `aim`; `arms` are lines through it, all in picture_px."""
+        linear = view_transform
+        turned = QTransform(linear.m11(), linear.m12(), linear.m21(), linear.m22(), 0.0, 0.0)
+        zoom = math.sqrt(abs(turned.determinant()))
         if zoom >= _NOT_NEEDED_FROM_ZOOM:
             self.hide()
             return
         factor = max(MAGNIFICATION, _LEAST_ZOOM / zoom)
-        linear = view_transform
-        turned = QTransform(linear.m11(), linear.m12(), linear.m21(), linear.m22(), 0.0, 0.0)
         magnified = turned * QTransform.fromScale(factor, factor)
         centre = magnified.map(aim)
         half = SIDE_PX / 2.0
@@ -53,16 +52,17 @@ class Loupe(QWidget):
         self.show()
         self.update()
 
-    def keep_beside(self, view_point: QPointF) -> None:
-        """Stand to the upper right of a point of the parent, or where there is room."""
-        room = self._parent.rect()
-        left = view_point.x() + _AWAY_PX
-        if left + SIDE_PX > room.right():
-            left = view_point.x() - _AWAY_PX - SIDE_PX
-        top = view_point.y() - _AWAY_PX - SIDE_PX
-        if top < room.top():
-            top = view_point.y() + _AWAY_PX
-        self.move(round(left), round(top))
+    def keep_beside(self, view_point: QPointF, labels: Sequence[QRectF]) -> None:
+        """Stand beside a point of the parent, where there is room and no label is hidden."""
+        room = QRectF(self._parent.rect())
+        near, far = _AWAY_PX, -_AWAY_PX - SIDE_PX
+        corners = [view_point + QPointF(dx, dy) for dx in (near, far) for dy in (far, near)]
+
+        def faults(number: int) -> tuple[int, int, int]:
+            box = QRectF(corners[number].x(), corners[number].y(), SIDE_PX, SIDE_PX)
+            return not room.contains(box), sum(box.intersects(label) for label in labels), number
+
+        self.move(corners[min(range(len(corners)), key=faults)].toPoint())
 
     def paintEvent(self, event: QPaintEvent) -> None:  # noqa: ARG002  (Qt's signature)
         """The magnified picture, the arms, a ring around the place and the frame."""

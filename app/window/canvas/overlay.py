@@ -14,13 +14,14 @@ from PySide6.QtGui import QPixmap, QTransform
 
 from app.reading import Caliper, Reading
 from app.window.canvas import look
-from app.window.canvas.caliper_text import caliper_name, caliper_value
+from app.window.canvas.caliper_text import caliper_name, caliper_value, short_name
 from app.window.canvas.frame import SheetFrame, Vector, frame_of
 from app.window.canvas.hit_test import Hit, HitTarget, hit_test
 from app.window.canvas.ink_map import Box, InkMap
 from app.window.canvas.label_layout import (
     LabelPlace,
     LabelRequest,
+    Size,
     centred_place,
     place_labels,
 )
@@ -59,6 +60,7 @@ class Overlay:
         self._selection = Selection()
         self._transform = QTransform()
         self._previews: tuple[Caliper, ...] = ()
+        self._view_box = QRectF()
         self.settled: list[Drawn] = []
         self.moving: list[Drawn] = []
 
@@ -96,13 +98,14 @@ class Overlay:
         self._transform = QTransform(transform)
         self.lay_out()
 
-    def set_previews(self, previews: Iterable[Caliper]) -> bool:
+    def set_previews(self, previews: Iterable[Caliper], view_box: QRectF) -> bool:
         """Draw calipers as they would be; those with a known id replace the settled ones.
 
+        Their labels stay within `view_box` (canvas px), however far away their bars are.
         Says whether the settled ones were laid out anew for it.
         """
         before = {c.caliper_id for c in self._previews}
-        self._previews = tuple(previews)
+        self._previews, self._view_box = tuple(previews), view_box
         if before == {c.caliper_id for c in self._previews}:
             self._lay_out_previews()
             return False
@@ -113,6 +116,14 @@ class Overlay:
         """The settled caliper under a point."""
         targets = [drawn.target for drawn in self.settled]
         return hit_test(targets, canvas_point.x(), canvas_point.y())
+
+    def moving_labels(self) -> list[QRectF]:
+        """Where the labels of the previews are, in canvas px."""
+        return [
+            QRectF(drawn.label[0], drawn.label[1].deviceIndependentSize())
+            for drawn in self.moving
+            if drawn.label is not None
+        ]
 
     def lay_out(self) -> None:
         """Place every label anew."""
@@ -125,13 +136,16 @@ class Overlay:
         self._lay_out_previews()
 
     def _lay_out_settled(self, calipers: Sequence[Caliper], frame: SheetFrame) -> list[Drawn]:
-        shapes, requests, texts = [], [], {}
+        shapes: list[CaliperShape] = []
+        requests: list[LabelRequest] = []
+        texts: dict[int, tuple[LabelText, ...]] = {}
         for caliper in calipers:
             key = caliper.caliper_id
             shapes.append(self._mapped(caliper_shape(caliper, frame, self._lanes[key])))
             chosen = key in self._selection.ids
             name, value = self._texts[key]
-            texts[key] = (LabelText(name, value, chosen), LabelText("", value, chosen))
+            names = (name, short_name(caliper), "")
+            texts[key] = tuple(LabelText(shown, value, chosen) for shown in names)
             requests.append(self._request(key, shapes[-1], texts[key], must_show=chosen))
         places = place_labels(requests, self._ink_share)
         drawn = []
@@ -153,12 +167,9 @@ class Overlay:
             value = caliper_value(self._reading, caliper)
             text = LabelText(caliper_name(caliper), value, chosen=True)
             request = self._request(caliper.caliper_id, shape, (text,), must_show=True)
-            part = self._selection.part if caliper.caliper_id in self._selection.ids else None
-            self.moving.append(
-                self._drawn(
-                    caliper.caliper_id, shape, centred_place(request), text, part or Part.END
-                )
-            )
+            place = kept_within(centred_place(request), request.sizes[0], self._view_box)
+            held = self._selection.part if caliper.caliper_id in self._selection.ids else Part.END
+            self.moving.append(self._drawn(caliper.caliper_id, shape, place, text, held))
 
     def _request(
         self, key: int, shape: CaliperShape, texts: Sequence[LabelText], *, must_show: bool
@@ -231,6 +242,13 @@ class Overlay:
         t = self._transform
         x, y = vector
         return t.m11() * x + t.m21() * y, t.m12() * x + t.m22() * y
+
+
+def kept_within(place: LabelPlace, size: Size, box: QRectF) -> LabelPlace:
+    """A label's place moved so that all of it is inside a box."""
+    left = max(min(place.left, box.right() - size[0] - _MARGIN_PX), box.left() + _MARGIN_PX)
+    top = max(min(place.top, box.bottom() - size[1] - _MARGIN_PX), box.top() + _MARGIN_PX)
+    return LabelPlace(left, top, place.size_index)
 
 
 def _bar_ends(shape: CaliperShape) -> list[QLineF]:

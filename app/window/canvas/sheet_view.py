@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable, Sequence
 
-from PySide6.QtCore import QEvent, QLineF, QPoint, QPointF, QRect, QRectF, Qt, Signal
+from PySide6.QtCore import QEvent, QPoint, QPointF, QRect, QRectF, Qt, Signal
 from PySide6.QtGui import (
     QFocusEvent,
     QKeyEvent,
@@ -19,6 +19,7 @@ from PySide6.QtWidgets import QFrame, QGraphicsScene, QGraphicsView, QWidget
 
 from app.reading import Caliper, CaliperKind, PicturePoint, quantity
 from app.window.canvas import look
+from app.window.canvas.aim_mark import AimMark
 from app.window.canvas.camera import Camera
 from app.window.canvas.frame import SheetFrame, frame_of
 from app.window.canvas.gestures.draw_scale_box import DrawScaleBox
@@ -29,13 +30,11 @@ from app.window.canvas.grid_overlay import GridOverlay
 from app.window.canvas.hit_test import Hit
 from app.window.canvas.ink_map import InkMap
 from app.window.canvas.keys import Keys
-from app.window.canvas.loupe import Loupe
 from app.window.canvas.mouse import Mouse
 from app.window.canvas.overlay import Overlay
 from app.window.canvas.painting import paint_box, paint_calipers, paint_lines
 from app.window.canvas.picture_item import PictureItem
 from app.window.canvas.selection import Selection
-from app.window.canvas.shape import aim_segments
 from app.window.document import Document
 
 _IN_SIGHT_VIEW_PX = 48
@@ -82,9 +81,6 @@ class SheetView(QGraphicsView):
         self._placing: TwoPlaces | None = None
         self._prompt = ""
         self._box: QRectF | None = None
-        self._aim: Aim | None = None
-        self._aim_lines: list[QLineF] = []
-        self._loupe_wanted = True
         self._set_up_view()
         self._picture_item = PictureItem()
         self._grid = GridOverlay()
@@ -92,7 +88,7 @@ class SheetView(QGraphicsView):
         self.scene().addItem(self._picture_item)
         self.scene().addItem(self._grid)
         self._overlay = Overlay(self.devicePixelRatioF())
-        self._loupe = Loupe(self)
+        self._aim_mark = AimMark(self)
         self._mouse = Mouse(self)
         self._keys = Keys(self)
         self._camera = Camera(self)
@@ -137,8 +133,8 @@ class SheetView(QGraphicsView):
         """Draw calipers as they would be; nothing is written."""
         before = self._moving_bounds()
         self._box = None
-        self._aim = aim
-        everything = self._overlay.set_previews(calipers)
+        self._aim_mark.set_aim(aim)
+        everything = self._overlay.set_previews(calipers, self._view_box())
         self._lay_out_aim()
         self._repaint(None if everything else before.united(self._moving_bounds()))
 
@@ -230,7 +226,7 @@ class SheetView(QGraphicsView):
 
     def set_loupe_visible(self, visible: bool) -> None:
         """Magnify what is being placed, or not."""
-        self._loupe_wanted = visible
+        self._aim_mark.set_loupe_wanted(visible)
         self._lay_out_aim()
 
     def view_px_from_picture_px(self, point: PicturePoint) -> QPoint:
@@ -262,10 +258,8 @@ class SheetView(QGraphicsView):
             return
         self.cancel_gesture()
         known = None if key is None else quantity(key)
-        if key is not None and known is not None and known.chained:
-            self._begin(PlaceChain(self, self._first_aim(), kind, key, lead))
-        else:
-            self._begin(PlaceCaliper(self, self._first_aim(), kind, key, lead))
+        placing_class = PlaceChain if known is not None and known.chained else PlaceCaliper
+        self._begin(placing_class(self, self._first_aim(), kind, key, lead))
 
     def begin_scale_box(self) -> None:
         """Ask for a box over a known number of large squares."""
@@ -385,10 +379,8 @@ class SheetView(QGraphicsView):
         """The pointer moved."""
         self._mouse.move(event)
         picture = self.pointer_at(event.position()).picture
-        if self._picture_item.sceneBoundingRect().contains(picture):
-            self.pointer_moved.emit(PicturePoint(picture.x(), picture.y()))
-        else:
-            self.pointer_moved.emit(None)
+        inside = self._picture_item.sceneBoundingRect().contains(picture)
+        self.pointer_moved.emit(PicturePoint(picture.x(), picture.y()) if inside else None)
 
     def mouseReleaseEvent(self, event: QMouseEvent) -> None:
         """A button came up."""
@@ -468,32 +460,19 @@ class SheetView(QGraphicsView):
         return QPointF(whole.dx() - unscrolled.dx(), whole.dy() - unscrolled.dy())
 
     def _lay_out_aim(self) -> None:
-        """The cross of what is aimed at, and the loupe around it."""
-        aim = self._aim
-        self._aim_lines = []
-        if aim is None:
-            self._loupe.hide()
-            return
-        segments = aim_segments(self.frame(), aim.place, aim.kind)
-        arms = [QLineF(*segment) for segment in segments]
-        if aim.crosshair:
-            self._aim_lines = [self.transform().map(arm) for arm in arms]
-        if self._loupe_wanted:
-            place = QPointF(aim.place.x_px, aim.place.y_px)
-            pixmap = self._picture_item.full_pixmap()
-            self._loupe.show_place(pixmap, place, self.transform(), self._camera.zoom, arms)
-            beside = self.view_px_from_picture_px(aim.place)
-            self._loupe.keep_beside(QPointF(beside))
-        else:
-            self._loupe.hide()
+        pixmap = self._picture_item.full_pixmap()
+        offset, labels = self._canvas_offset(), self._overlay.moving_labels()
+        self._aim_mark.lay_out(self.frame(), self.transform(), offset, pixmap, labels)
+
+    def _view_box(self) -> QRectF:
+        """What the view shows, in canvas px."""
+        return QRectF(self.viewport().rect()).translated(-self._canvas_offset())
 
     def _moving_bounds(self) -> QRectF:
         """What previews, cross and box cover, in canvas px."""
-        bounds = QRectF()
+        bounds = self._aim_mark.bounds()
         for drawn in self._overlay.moving:
             bounds = bounds.united(drawn.bounds)
-        for line in self._aim_lines:
-            bounds = bounds.united(QRectF(line.p1(), line.p2()).normalized())
         if self._box is not None:
             bounds = bounds.united(self.transform().mapRect(self._box))
         return bounds.adjusted(-4.0, -4.0, 4.0, 4.0)
@@ -514,7 +493,7 @@ class SheetView(QGraphicsView):
         painter.setWorldTransform(QTransform.fromTranslate(offset.x(), offset.y()))
         paint_calipers(painter, self._overlay.settled, exposed)
         paint_calipers(painter, self._overlay.moving, exposed)
-        paint_lines(painter, self._aim_lines, look.AIM)
+        paint_lines(painter, self._aim_mark.lines, look.AIM)
         if self._box is not None:
             paint_box(painter, self.transform().mapRect(self._box))
         painter.restore()

@@ -99,7 +99,12 @@ class PlaceChain(PlaceCaliper):
     """
 
     def __init__(
-        self, host: Host, aim: PicturePoint, kind: CaliperKind, quantity: str, lead: str | None
+        self,
+        host: Host,
+        aim: PicturePoint,
+        kind: CaliperKind,
+        quantity: str | None,
+        lead: str | None,
     ) -> None:
         super().__init__(host, aim, kind, quantity, lead)
         self._starts: list[PicturePoint] = []
