@@ -138,6 +138,15 @@ class Document(QObject):
         self._history = self._history.marked_saved(self._history.reading)
         self.changed.emit()
 
+    def picture_kept_at(self, path: Path) -> None:
+        """A picture that had no file (a pasted one) has one now, byte for byte the same."""
+        if self._history is None or self._picture is None:
+            raise RuntimeError("there is no picture to keep")
+        self._picture = replace(self._picture, path=path, file_name=path.name)
+        reading = self._history.reading
+        identity = replace(reading.picture, file_name=path.name)
+        self.edit(replace(reading, picture=identity), "Save picture")
+
     def abandon(self) -> None:
         """The reader chose not to keep the edits since the last save."""
         if self._path is not None:

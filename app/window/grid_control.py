@@ -1,0 +1,111 @@
+"""What the window says and offers about the grid: found, uncertain, missing, given by hand."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+from PySide6.QtCore import QObject
+
+from app.reading.marks import PicturePoint
+from app.window.canvas.sheet_view import SheetView
+from app.window.dialogs.ask import Ask
+from app.window.document import Document
+from app.window.jobs import Jobs
+from app.window.opening import Opening
+from app.window.panels.notices import Notices
+from imaging import sheet_map_from_box
+
+_SUBJECT = "grid"
+_STOPPED = "No grid is known for this picture, so nothing can be measured yet."
+_UNCERTAIN = (
+    "The lines found may be 1 mm or 5 mm apart: switch the grid overlay on (G) and count. "
+    "Until that is settled every value may be off five times."
+)
+
+
+class GridControl(QObject):
+    """Keeps the notice about the grid, and takes a scale given by hand."""
+
+    def __init__(
+        self,
+        document: Document,
+        view: SheetView,
+        jobs: Jobs,
+        opening: Opening,
+        notices: Notices,
+        ask: Ask,
+        parent: QObject | None = None,
+    ) -> None:
+        super().__init__(parent)
+        self._document = document
+        self._view = view
+        self._jobs = jobs
+        self._opening = opening
+        self._notices = notices
+        self._ask = ask
+        self._reason = ""
+        document.opened.connect(self._forget)
+        document.changed.connect(self._show)
+        jobs.busy_changed.connect(self._show)
+        opening.grid_missing.connect(self._missing)
+        view.scale_box_drawn.connect(self._box_drawn)
+
+    def begin_box(self) -> None:
+        """Ask for a box over a known number of large squares."""
+        self._jobs.give_up()
+        self._view.begin_scale_box()
+
+    def confirm_scale(self) -> None:
+        """The reader has counted: one small square of the map is one of the paper."""
+        reading = self._document.reading
+        if reading is None or reading.sheet_map is None:
+            return
+        sheet_map = replace(
+            reading.sheet_map,
+            scale_is_certain=True,
+            evidence=(*reading.sheet_map.evidence, "The reader confirmed the size of a square."),
+        )
+        self._document.edit(replace(reading, sheet_map=sheet_map), "Confirm scale")
+
+    def _box_drawn(self, corner: PicturePoint, opposite: PicturePoint) -> None:
+        reading, picture = self._document.reading, self._document.picture
+        squares = self._ask.squares_in_box()
+        if reading is None or picture is None or squares is None:
+            return
+        try:
+            sheet_map = sheet_map_from_box(
+                picture.size_px,
+                (corner.x_px, corner.y_px),
+                (opposite.x_px, opposite.y_px),
+                *squares,
+            )
+        except ValueError as error:
+            self._ask.tell("Give the scale by hand", f"No scale was set: {error}.")
+            return
+        self._document.edit(replace(reading, sheet_map=sheet_map), "Give scale by hand")
+
+    def _forget(self) -> None:
+        self._reason = ""
+
+    def _missing(self, reason: str) -> None:
+        self._reason = reason
+        self._show()
+
+    def _show(self) -> None:
+        reading = self._document.reading
+        by_hand = ("Give the scale by hand", self.begin_box)
+        if reading is None or self._jobs.is_busy():
+            self._notices.take_away(_SUBJECT)
+        elif reading.sheet_map is None:
+            again = ("Find the grid again", self._opening.find_grid)
+            self._notices.put(_SUBJECT, "stop", self._reason or _STOPPED, [by_hand, again])
+        elif self._reason:
+            # There is a map already; a second search found none and changed nothing.
+            text = f"{self._reason} The scale is as it was."
+            self._notices.put(_SUBJECT, "warn", text, closable=True)
+            self._reason = ""
+        elif not reading.sheet_map.scale_is_certain:
+            right = ("One small square is 1 mm", self.confirm_scale)
+            self._notices.put(_SUBJECT, "warn", _UNCERTAIN, [right, by_hand])
+        else:
+            self._notices.take_away(_SUBJECT)

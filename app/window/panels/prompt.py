@@ -1,0 +1,107 @@
+"""What to do now, in large plain words, and what the program is busy with."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QFontMetrics, QResizeEvent
+from PySide6.QtWidgets import (
+    QFrame,
+    QHBoxLayout,
+    QLabel,
+    QProgressBar,
+    QPushButton,
+    QSizePolicy,
+    QWidget,
+)
+
+_TYPE_SIZES_PT = (14.0, 13.0, 12.0, 11.0, 10.0)
+
+
+class FittingLabel(QLabel):
+    """One line in the largest type that fits; what does not fit even so is cut and tipped."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self._words = ""
+        self.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Preferred)
+
+    def set_words(self, words: str) -> None:
+        """What to say."""
+        self._words = words
+        self.setAccessibleName(words)
+        self._fit()
+
+    def words(self) -> str:
+        """What is said, uncut."""
+        return self._words
+
+    def resizeEvent(self, event: QResizeEvent) -> None:
+        super().resizeEvent(event)
+        self._fit()
+
+    def _fit(self) -> None:
+        font = self.font()
+        for size_pt in _TYPE_SIZES_PT:
+            font.setPointSizeF(size_pt)
+            if QFontMetrics(font).horizontalAdvance(self._words) <= self.width():
+                break
+        self.setFont(font)
+        cut = QFontMetrics(font).elidedText(
+            self._words, Qt.TextElideMode.ElideRight, max(self.width(), 1)
+        )
+        self.setText(cut)
+        self.setToolTip(self._words if cut != self._words else "")
+
+
+class Prompt(QFrame):
+    """The line above the canvas.
+
+    Signals
+    -------
+    cancel_wanted()
+        The reader does not want to wait for the present work.
+    """
+
+    cancel_wanted = Signal()
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self.setObjectName("prompt")
+        self._idle = ""
+        self._gesture = ""
+        self.text = FittingLabel()
+        self.text.setObjectName("promptText")
+        self.busy = QLabel()
+        self.bar = QProgressBar()
+        self.bar.setRange(0, 0)
+        self.bar.setFixedWidth(110)
+        self.bar.setTextVisible(False)
+        self.cancel = QPushButton("Cancel")
+        self.cancel.clicked.connect(self.cancel_wanted)
+        layout = QHBoxLayout(self)
+        layout.setContentsMargins(14, 6, 12, 6)
+        layout.addWidget(self.text, 1)
+        for widget in (self.busy, self.bar, self.cancel):
+            layout.addWidget(widget)
+        # Of one height whatever it says: the canvas must not move under a hand that aims.
+        self.setFixedHeight(42)
+        self.set_busy("")
+
+    def set_idle(self, words: str) -> None:
+        """What to say while no gesture is going on."""
+        self._idle = words
+        self._show()
+
+    def set_gesture(self, words: str) -> None:
+        """What a gesture on the canvas asks for; empty when it has ended."""
+        self._gesture = words
+        self._show()
+
+    def set_busy(self, title: str) -> None:
+        """Show what is being worked on; an empty title hides bar and button."""
+        self.busy.setText(title)
+        for widget in (self.busy, self.bar, self.cancel):
+            widget.setVisible(bool(title))
+
+    def _show(self) -> None:
+        self.text.set_words(self._gesture or self._idle)

@@ -1,0 +1,109 @@
+"""Plain sentences about the sheet and its settings; no Qt."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from app.reading.calibration import Calibration, Evidence, Setting
+from app.reading.marks import PicturePoint
+from app.reading.model import Reading
+from imaging.sheet_map import SheetMap
+
+_EVIDENCE_WORDS = {
+    Evidence.DEFAULT: "default",
+    Evidence.PULSE: "pulse",
+    Evidence.LEGEND: "legend",
+    Evidence.READER: "reader",
+}
+
+
+def evidence_statement(setting: Setting) -> str:
+    """What a setting rests on and whether somebody has confirmed it."""
+    word = _EVIDENCE_WORDS[setting.evidence]
+    if not setting.confirmed:
+        return f"{word}, not confirmed"
+    if setting.evidence is Evidence.READER:
+        return "confirmed by reader"
+    return f"{word}, confirmed"
+
+
+def unconfirmed_settings(calibration: Calibration) -> tuple[str, ...]:
+    """Each setting nobody has confirmed, with its value."""
+    rows = [
+        ("paper speed", calibration.paper_speed_mm_per_s, "mm/s"),
+        ("gain", calibration.gain_mm_per_mv, "mm/mV"),
+        ("chest gain", calibration.chest_gain_mm_per_mv, "mm/mV"),
+    ]
+    return tuple(
+        f"{name} {setting.value:g} {unit}"
+        for name, setting, unit in rows
+        if setting is not None and not setting.confirmed
+    )
+
+
+def unconfirmed_statement(calibration: Calibration) -> str:
+    """One sentence on what nobody has confirmed; empty when all is confirmed."""
+    names = unconfirmed_settings(calibration)
+    if not names:
+        return ""
+    listed = " and ".join(filter(None, [", ".join(names[:-1]), names[-1]]))
+    listed = listed[0].upper() + listed[1:]
+    are = "is" if len(names) == 1 else "are"
+    return (
+        f"{listed} {are} not confirmed: values marked ? rest on that. Check the strip's "
+        "legend or calibration pulse, then confirm above."
+    )
+
+
+def largest_error_mm(sheet_map: SheetMap) -> float:
+    """The largest one-sigma error of a point where the grid was seen; NaN if nowhere."""
+    coverage = sheet_map.coverage
+    rows, columns = np.nonzero(coverage.cells())
+    if rows.size == 0:
+        return math.nan
+    centres_px = (np.column_stack([columns, rows]) + 0.5) * coverage.cell_px - 0.5
+    limit_px = np.array(sheet_map.picture_size_px, dtype=np.float64) - 1.0
+    return float(np.nanmax(sheet_map.standard_error_mm(np.minimum(centres_px, limit_px))))
+
+
+def grid_statement(sheet_map: SheetMap | None) -> str:
+    """What is known of the grid, in one line for the status bar."""
+    if sheet_map is None:
+        return "No grid yet"
+    pitch = (
+        f"{sheet_map.x_pitch_px_per_mm:.2f} × {sheet_map.y_pitch_px_per_mm:.2f} px per small square"
+    )
+    error_mm = largest_error_mm(sheet_map)
+    error = "" if math.isnan(error_mm) else f", standard error {error_mm:.2g} mm"
+    if sheet_map.source == "reader":
+        return f"Scale given by hand: {pitch}{error}"
+    if not sheet_map.scale_is_certain:
+        return f"Grid found, scale NOT certain: {pitch}{error}"
+    return f"Grid found: {pitch}{error}"
+
+
+def pointer_statement(point: PicturePoint | None, sheet_map: SheetMap | None) -> str:
+    """Where the pointer is, in mm of grid where that is known."""
+    if point is None:
+        return ""
+    if sheet_map is None:
+        return f"{point.x_px:.0f}, {point.y_px:.0f} px"
+    x_mm, y_mm = sheet_map.to_mm(np.array([[point.x_px, point.y_px]]))[0]
+    if not (math.isfinite(x_mm) and math.isfinite(y_mm)):
+        return ""
+    return f"x {x_mm:.1f} mm, y {y_mm:.1f} mm"
+
+
+def holds_work(reading: Reading) -> bool:
+    """Whether a reading that has no file yet holds anything its reader put there."""
+    by_hand = reading.sheet_map is not None and reading.sheet_map.source == "reader"
+    return bool(
+        by_hand
+        or reading.calipers
+        or reading.hand_figures
+        or reading.reader
+        or reading.colleague
+        or reading.calibration != Calibration()
+    )
