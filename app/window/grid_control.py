@@ -16,6 +16,7 @@ from app.window.panels.notices import Notices
 from imaging import sheet_map_from_box
 
 _SUBJECT = "grid"
+_SEARCH = "grid search"
 _STOPPED = "No grid is known for this picture, so nothing can be measured yet."
 _UNCERTAIN = (
     "The lines found may be 1 mm or 5 mm apart: switch the grid overlay on (G) and count. "
@@ -86,10 +87,16 @@ class GridControl(QObject):
 
     def _forget(self) -> None:
         self._reason = ""
+        self._notices.take_away(_SEARCH)
 
     def _missing(self, reason: str) -> None:
-        self._reason = reason
-        self._show()
+        reading = self._document.reading
+        if reading is not None and reading.sheet_map is not None:
+            text = f"{reason} The scale is as it was."
+            self._notices.put(_SEARCH, "warn", text, closable=True)
+        else:
+            self._reason = reason
+            self._show()
 
     def _show(self) -> None:
         reading = self._document.reading
@@ -99,11 +106,6 @@ class GridControl(QObject):
         elif reading.sheet_map is None:
             again = ("Find the grid again", self._opening.find_grid)
             self._notices.put(_SUBJECT, "stop", self._reason or _STOPPED, [by_hand, again])
-        elif self._reason:
-            # There is a map already; a second search found none and changed nothing.
-            text = f"{self._reason} The scale is as it was."
-            self._notices.put(_SUBJECT, "warn", text, closable=True)
-            self._reason = ""
         elif not reading.sheet_map.scale_is_certain:
             right = ("One small square is 1 mm", self.confirm_scale)
             self._notices.put(_SUBJECT, "warn", _UNCERTAIN, [right, by_hand])

@@ -28,7 +28,6 @@ from app.window.saving import Leaving, Saving
 from app.window.statements import grid_statement, pointer_statement, unconfirmed_statement
 from app.window.walk import Walk
 
-WORKSHEET_WIDTH_PX = 490
 _log = logging.getLogger(__name__)
 
 
@@ -143,7 +142,8 @@ class MainWindow(QMainWindow):
         bench.setStretchFactor(0, 1)
         bench.setStretchFactor(1, 0)
         bench.setChildrenCollapsible(False)
-        bench.setSizes([2 * WORKSHEET_WIDTH_PX, WORKSHEET_WIDTH_PX])
+        worksheet_px = self.worksheet.sizeHint().width()
+        bench.setSizes([2 * worksheet_px, worksheet_px])
         self.setCentralWidget(_stacked(self.settings, self.notices, bench))
         # Drops go to the window, whatever the canvas makes of them.
         self.view.setAcceptDrops(False)

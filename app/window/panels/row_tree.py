@@ -14,11 +14,12 @@ from PySide6.QtCore import (
     QTimer,
     Signal,
 )
-from PySide6.QtGui import QBrush, QColor, QFont, QKeyEvent, QPalette
+from PySide6.QtGui import QBrush, QColor, QFont, QFontMetrics, QKeyEvent, QPalette
 from PySide6.QtWidgets import (
     QComboBox,
     QHeaderView,
     QLineEdit,
+    QStyle,
     QStyledItemDelegate,
     QStyleOptionViewItem,
     QTreeWidget,
@@ -46,6 +47,7 @@ class Column(IntEnum):
 
 
 _ROW_HEIGHT_PX = 20
+_DEPTH_FIRST = {"beat": 0, "line": 1, "value": 1, "free": 1, "group": 2}
 _HEADERS = {
     Column.NAME: ("Line", "What is measured"),
     Column.LEAD: ("Lead", "Click to choose another lead"),
@@ -54,12 +56,14 @@ _HEADERS = {
     Column.HAND: ("Colleague", "Click to type a colleague's figure; empty it to remove it"),
     Column.DIFFERENCE: ("Difference", "Mine less the colleague's, and whether that is within ±"),
 }
-_WIDTHS = {
-    Column.NAME: 122,
-    Column.LEAD: 34,
-    Column.COUNT: 22,
-    Column.VALUE: 122,
-    Column.HAND: 68,
+# The longest text each column must show whole, and the room beside it for indent or sign.
+_LONGEST = {
+    Column.NAME: ("QTc Framingham", 24),
+    Column.LEAD: ("Lead", 8),
+    Column.COUNT: ("12", 8),
+    Column.VALUE: ("1000 ± 99 ms ?", 24),
+    Column.HAND: ("Colleague", 8),
+    Column.DIFFERENCE: ("−999 outside", 8),
 }
 
 
@@ -114,9 +118,9 @@ class RowTree(QTreeWidget):
         header.setSectionsMovable(False)
         header.setMinimumSectionSize(20)
         header.setStretchLastSection(True)
-        for column, width in _WIDTHS.items():
+        for column in Column:
             header.setSectionResizeMode(column, QHeaderView.ResizeMode.Interactive)
-            header.resizeSection(column, width)
+            header.resizeSection(column, self._needed_px(column))
         palette = self.palette()
         palette.setColor(QPalette.ColorRole.Highlight, QColor(theme.ACCENT_WASH))
         palette.setColor(QPalette.ColorRole.HighlightedText, QColor(theme.INK))
@@ -129,13 +133,21 @@ class RowTree(QTreeWidget):
         self.itemClicked.connect(self._clicked)
         self.currentItemChanged.connect(self._current_changed)
 
+    def sizeHint(self) -> QSize:
+        """Wide enough for every column and the scroll bar."""
+        columns_px = sum(self._needed_px(column) for column in Column)
+        bar_px = self.style().pixelMetric(QStyle.PixelMetric.PM_ScrollBarExtent)
+        return QSize(columns_px + bar_px + 2 * self.frameWidth(), super().sizeHint().height())
+
     def show_rows(self, rows: Sequence[Row]) -> None:
         """Bring the tree up to date; what is open, picked or being edited stays so."""
         self._syncing = True
         try:
             kept: set[RowId] = set()
             self._sync(self.invisibleRootItem(), rows, kept)
-            for row_id in [row_id for row_id in self._items if row_id not in kept]:
+            gone = [row_id for row_id in self._items if row_id not in kept]
+            # Beats first, groups last: with a parent its children are deleted too.
+            for row_id in sorted(gone, key=lambda row_id: _DEPTH_FIRST[row_id[0]]):
                 self._remove(row_id)
         finally:
             self._syncing = False
@@ -192,6 +204,12 @@ class RowTree(QTreeWidget):
                 self.edit_hand(row.row_id)
                 return
         super().keyPressEvent(event)
+
+    def _needed_px(self, column: Column) -> int:
+        words, beside_px = _LONGEST[column]
+        font = QFont(self.font())
+        font.setBold(column is Column.VALUE)
+        return QFontMetrics(font).horizontalAdvance(words) + beside_px
 
     def _clicked(self, item: QTreeWidgetItem, column: int) -> None:
         if not isinstance(item, RowItem):

@@ -140,7 +140,7 @@ class Worksheet(QWidget):
         splitter.setChildrenCollapsible(False)
         splitter.setSizes([460, 150])
         whole = QVBoxLayout(self)
-        whole.setContentsMargins(8, 6, 8, 6)
+        whole.setContentsMargins(6, 6, 6, 6)
         whole.addWidget(self.names)
         whole.addWidget(splitter, 1)
 

@@ -307,4 +307,4 @@ def _difference_text(comparison: Comparison | None, unit: str) -> str:
     number = f"{comparison.difference:+.{_DECIMALS.get(unit, 0)}f}".replace("-", "−")
     if comparison.within is None:
         return number
-    return f"{number} {'within' if comparison.within else 'OUTSIDE'}"
+    return f"{number} {'within' if comparison.within else 'outside'}"
