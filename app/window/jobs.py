@@ -6,7 +6,7 @@ import logging
 from collections.abc import Callable
 from typing import Any, TypeVar
 
-from PySide6.QtCore import QObject, QThread, Signal
+from PySide6.QtCore import QObject, QThread, QTimer, Signal
 
 T = TypeVar("T")
 
@@ -66,10 +66,13 @@ class Jobs(QObject):
         work: Callable[[], T],
         done: Callable[[T], None],
         failed: Callable[[Exception], None],
+        *,
+        delay_ms: int = 0,
     ) -> None:
         """Run `work` on a thread, then `done` or `failed` on this one.
 
-        A job still awaited is given up first.
+        A job still awaited is given up first. `delay_ms` lets what is waiting to be painted
+        be painted first: Python threads take turns.
         """
         self.give_up()
         worker = _Worker(work, done, failed)
@@ -78,7 +81,7 @@ class Jobs(QObject):
         self._threads.add(worker)
         self._awaited = worker
         self.busy_changed.emit(title)
-        worker.start()
+        QTimer.singleShot(delay_ms, worker, lambda: self._set_off(worker))
 
     def give_up(self) -> None:
         """Wait no longer for the present job."""
@@ -91,6 +94,12 @@ class Jobs(QObject):
         self.give_up()
         for worker in list(self._threads):
             worker.wait()
+
+    def _set_off(self, worker: _Worker) -> None:
+        if worker is self._awaited:
+            worker.start()
+        else:
+            self._threads.discard(worker)
 
     def _sweep(self) -> None:
         for worker in [worker for worker in self._threads if worker.isFinished()]:

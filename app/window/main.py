@@ -59,8 +59,7 @@ def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWin
     window = MainWindow(memory_log=memory_log)
     faults.install_hooks(window.show_fault)
     if path is not None:
-        decoded = None if early is None else early.result
-        window.opening.open_path(Path(path), decoded)
+        window.opening.open_path(Path(path), None if early is None else early.result)
     return app, window
 
 

@@ -39,6 +39,7 @@ from imaging import (
 from imaging import find_grid as find_grid_on
 
 PASTED_NAME = "Pasted picture"
+_PAINT_FIRST_MS = 40
 _log = logging.getLogger(__name__)
 
 
@@ -80,8 +81,12 @@ class Opening(QObject):
         if path is not None:
             self.open_path(path)
 
-    def open_path(self, path: Path, decoded: Callable[[], Picture] | None = None) -> None:
-        """Open a picture or a reading; `decoded` gives the picture where it is being decoded."""
+    def open_path(self, path: Path, early: Callable[[], Picture] | None = None) -> None:
+        """Open a picture or a reading.
+
+        `early` waits for a picture whose decoding has begun already; it is opened at once, so
+        that a window not shown yet is painted only one time, with the picture.
+        """
         if not self._may_leave():
             return
         if path.name.endswith(SUFFIX):
@@ -101,7 +106,15 @@ class Opening(QObject):
                 self._open_reading(reading_path)
             if answer != 1:
                 return
-        self._decode(path.name, decoded or partial(open_picture, path), self._first_page)
+        if early is None:
+            self._decode(path.name, partial(open_picture, path), self._first_page)
+            return
+        try:
+            picture = early()
+        except SmallsquareError as error:
+            self._not_opened(error)
+            return
+        self._first_page(picture)
 
     def can_take(self, data: QMimeData) -> bool:
         """Whether something dragged or copied can be opened."""
@@ -127,6 +140,7 @@ class Opening(QObject):
             partial(find_grid_on, picture),
             partial(self._grid_found, picture),
             self._grid_search_failed,
+            delay_ms=_PAINT_FIRST_MS,
         )
 
     def _may_leave(self) -> bool:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from functools import cached_property
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -27,15 +29,21 @@ class InkMap:
     """
 
     def __init__(self, pixels: NDArray[np.uint8]) -> None:
-        sampled = pixels[::2, ::2]
+        self._pixels = pixels
+
+    @cached_property
+    def _sums(self) -> NDArray[np.int64]:
+        """Made when the first label asks: a picture must not wait for it to be shown."""
+        sampled = self._pixels[::2, ::2]
         brightest = np.maximum(np.maximum(sampled[..., 0], sampled[..., 1]), sampled[..., 2])
         rows, columns = (length // 2 * 2 for length in brightest.shape)
         blocks = brightest[:rows, :columns].reshape(rows // 2, 2, columns // 2, 2)
         darkest = blocks.min(axis=(1, 3))
         paper = int(np.percentile(darkest, 80)) if darkest.size else 255
         ink = darkest < paper - _DARKER_THAN_PAPER
-        self._sums = np.zeros((ink.shape[0] + 1, ink.shape[1] + 1), dtype=np.int64)
-        self._sums[1:, 1:] = ink.cumsum(axis=0).cumsum(axis=1)
+        sums = np.zeros((ink.shape[0] + 1, ink.shape[1] + 1), dtype=np.int64)
+        sums[1:, 1:] = ink.cumsum(axis=0).cumsum(axis=1)
+        return sums
 
     def share(self, box_px: Box) -> float:
         """The share, 0 to 1, of a box (left, top, right, bottom) in picture_px that is inked."""

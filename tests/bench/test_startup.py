@@ -1,0 +1,12 @@
+"""The window shows its first picture not much later than a bare viewer does."""
+
+from __future__ import annotations
+
+import pytest
+
+from tests.bench.bench_startup import measure_startup
+
+
+@pytest.mark.benchmark
+def test_the_first_picture_comes_within_two_and_a_half_times_a_bare_viewer_s() -> None:
+    assert measure_startup().ratio <= 2.5
