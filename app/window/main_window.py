@@ -59,7 +59,7 @@ class MainWindow(QMainWindow):
         self.grid = GridControl(
             self.document, self.view, self.jobs, self.opening, self.notices, self.ask, self
         )
-        self.walk = Walk(self.document, self.view, self.worksheet, self)
+        self.walk = Walk(self.document, self.view, self.worksheet, self.jobs, self)
         self._pointer_label = QLabel()
         self._zoom_label = QLabel()
         self._grid_label = QLabel()
@@ -265,7 +265,8 @@ class MainWindow(QMainWindow):
         self._pointer_label.setText(pointer_statement(point, sheet_map))
 
     def _zoom(self, factor: float) -> None:
-        self._zoom_label.setText(f"{100.0 * factor:.0f} %")
+        is_there = self.document.picture is not None
+        self._zoom_label.setText(f"{100.0 * factor:.0f} %" if is_there else "")
 
 
 def _stacked(*widgets: QWidget) -> QWidget:

@@ -207,8 +207,8 @@ class Opening(QObject):
                 "Edits after the last save",
                 f"Edits made after {path.name} was last saved were found.",
                 ["Take them", "Drop them and open as saved", "Cancel"],
-                f"They were made at {later.changed_at}; the saved reading is of "
-                f"{reading.changed_at}.",
+                f"They were made at {_readable(later.changed_at)}; the saved reading is of "
+                f"{_readable(reading.changed_at)}.",
             )
             if answer == 2:
                 return
@@ -311,6 +311,11 @@ class _OpenedReading:
         self.reading = reading
         self.recovered = recovered
         self.drop_journal = drop_journal
+
+
+def _readable(moment: str) -> str:
+    """An ISO 8601 moment with a space where people expect one."""
+    return moment.replace("T", " ", 1)
 
 
 def _turned_as(found: SheetMap, before: SheetMap | None) -> SheetMap:

@@ -55,6 +55,7 @@ QTreeView {{ border: 1px solid {EDGE}; }}
 QHeaderView::section {{ background: {DESK}; color: {QUIET_INK}; border: none;
     border-bottom: 1px solid {EDGE}; padding: 3px 4px; }}
 QPushButton[leading="true"] {{ font-weight: 600; padding: 5px 10px; }}
+QDialogButtonBox {{ dialogbuttonbox-buttons-have-icons: 0; }}
 QStatusBar::item {{ border: none; }}
 """
 

@@ -7,6 +7,7 @@ from PySide6.QtCore import QObject, Signal
 from app.reading.marks import Caliper, CaliperKind
 from app.window.canvas.sheet_view import SheetView
 from app.window.document import Document
+from app.window.jobs import Jobs
 from app.window.panels.lines import Line
 from app.window.panels.worksheet import Worksheet
 from app.window.panels.worksheet_rows import Row, RowId
@@ -31,12 +32,14 @@ class Walk(QObject):
         document: Document,
         view: SheetView,
         worksheet: Worksheet,
+        jobs: Jobs,
         parent: QObject | None = None,
     ) -> None:
         super().__init__(parent)
         self._document = document
         self._view = view
         self._worksheet = worksheet
+        self._jobs = jobs
         self._line_id: int | None = None
         self._following = False
         worksheet.row_opened.connect(self._opened)
@@ -48,6 +51,7 @@ class Walk(QObject):
         view.placing_finished.connect(self._placed)
         view.placing_cancelled.connect(self._refreshed)
         view.selection_changed.connect(self._selection_changed)
+        jobs.busy_changed.connect(self._say)
         document.opened.connect(self._forget)
 
     @property
@@ -184,7 +188,9 @@ class Walk(QObject):
         if reading is None:
             return "Open a picture of a paper ECG, or drop one here."
         if reading.sheet_map is None:
-            return "The grid is not known yet, so nothing can be measured."
+            if self._jobs.is_busy():
+                return "The grid is being looked for."
+            return "The grid is not known, so nothing can be measured."
         following = self.following_line()
         line = self.line
         marked = line is not None and bool(reading.calipers_of(line.key, line.lead))

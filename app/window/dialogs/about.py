@@ -16,12 +16,17 @@ from PySide6.QtWidgets import (
 from app.version import software_version
 from app.window.actions import keys_list
 
+_ROW_HEIGHT_PX = 23
 _CANVAS_KEYS = (
-    ("Arrow keys", "Move the picked leg by 0.1 mm (with Shift by 1 mm)"),
-    ("Esc", "Give up what the canvas asks for"),
-    ("Wheel", "Zoom at the pointer"),
-    ("F2", "Type a colleague's figure on the picked line"),
-    ("Enter", "Mark the picked line"),
+    ("Arrow keys", "Move the picked leg by 0.1 mm (Shift: 1 mm, Ctrl: 5 mm)"),
+    ("Tab", "Pick the next leg or caliper on the sheet"),
+    ("+  −", "More or fewer teeth of the picked comb"),
+    ("Enter", "Take the place aimed at, or end a row of RR intervals"),
+    ("Esc", "One step back in what the sheet asks for"),
+    ("Wheel", "Zoom at the pointer (with Shift: pan)"),
+    ("Space and drag", "Pan; so does dragging on an empty place"),
+    ("Enter on a line", "Mark it, if it has no marks yet"),
+    ("F2 on a line", "Type a colleague's figure"),
 )
 _ABOUT = (
     "Measures paper ECGs from a scan or photograph: the reader places calipers on the "
@@ -64,6 +69,7 @@ class KeysDialog(QDialog):
         table.setSelectionMode(QTableWidget.SelectionMode.NoSelection)
         table.setFocusPolicy(Qt.FocusPolicy.NoFocus)
         table.setShowGrid(False)
+        table.verticalHeader().setDefaultSectionSize(_ROW_HEIGHT_PX)
         for place, (key, words) in enumerate(rows):
             table.setItem(place, 0, QTableWidgetItem(key))
             table.setItem(place, 1, QTableWidgetItem(words))

@@ -111,7 +111,9 @@ class SettingsStrip(QFrame):
     def _show(self) -> None:
         reading = self._document.reading
         self.setEnabled(reading is not None)
-        calibration = Calibration() if reading is None else reading.calibration
+        if reading is None:
+            return
+        calibration = reading.calibration
         self.speed.show_setting(calibration.paper_speed_mm_per_s)
         self.gain.show_setting(calibration.gain_mm_per_mv)
         self.chest_gain.show_setting(calibration.chest_gain_mm_per_mv)
