@@ -84,7 +84,7 @@ def keep_log_in_memory() -> MemoryLog:
     memory = MemoryLog()
     root = logging.getLogger()
     root.addHandler(memory)
-    root.setLevel(min(root.level, logging.INFO) if root.level else logging.INFO)
+    root.setLevel(logging.INFO)
     return memory
 
 

@@ -44,6 +44,7 @@ class MainWindow(QMainWindow):
     def __init__(self, ask: Ask | None = None, memory_log: MemoryLog | None = None) -> None:
         super().__init__()
         self._memory_log = memory_log
+        self._is_telling = False
         self.ask = ask or Ask(self)
         self.document = Document(self)
         self.jobs = Jobs(self)
@@ -73,8 +74,17 @@ class MainWindow(QMainWindow):
         self.worksheet.refresh()
 
     def show_fault(self, sentence: str) -> None:
-        """Tell of something unforeseen."""
-        self.ask.tell("Smallsquare", sentence)
+        """Tell of something unforeseen, one box at a time.
+
+        What goes wrong while painting would go wrong again behind its own box.
+        """
+        if self._is_telling:
+            return
+        self._is_telling = True
+        try:
+            self.ask.tell("Smallsquare", sentence)
+        finally:
+            self._is_telling = False
 
     def paste(self) -> None:
         """Open the picture or file on the clipboard."""
@@ -124,6 +134,8 @@ class MainWindow(QMainWindow):
             return
         if leaving is Leaving.DISCARD:
             self.document.abandon()
+        # A search that goes on is waited for out of sight.
+        self.hide()
         self.jobs.wait_for_all()
         event.accept()
 

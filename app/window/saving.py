@@ -68,7 +68,8 @@ class Saving(QObject):
         self._ask = ask
         self._commit_pending = commit_pending
         self._pasted_png: bytes | None = None
-        document.opened.connect(self._forget_pasted)
+        self._file_state: tuple[int, int] | None = None
+        document.opened.connect(self._opened)
 
     def hold_pasted(self, png: bytes) -> None:
         """Keep the bytes of the pasted picture until they have a file."""
@@ -94,9 +95,20 @@ class Saving(QObject):
     def save(self) -> bool:
         """Save the reading to its file, or ask for one; False if it was not saved."""
         self._commit_pending()
-        if self._document.path is None:
+        path = self._document.path
+        if path is None:
             return self.save_as()
-        return self._write_reading(self._document.path)
+        if _state_of(path) != self._file_state:
+            answer = self._ask.choose(
+                "Save the reading",
+                f"{path.name} was changed or removed by somebody else since it was opened here.",
+                ["Save under another name", "Save in its place", "Cancel"],
+            )
+            if answer == 0:
+                return self.save_as()
+            if answer == 2:
+                return False
+        return self._write_reading(path)
 
     def save_as(self) -> bool:
         """Save the reading under a name that is asked for."""
@@ -153,6 +165,7 @@ class Saving(QObject):
         except SmallsquareError as error:
             self.failed.emit(str(error))
             return False
+        self._file_state = _state_of(path)
         self._written(path)
         return True
 
@@ -194,9 +207,9 @@ class Saving(QObject):
             answer = self._ask.choose(
                 title,
                 f"{path.name} is there already.",
-                ["Replace it", "Choose another name", "Cancel"],
+                ["Choose another name", "Replace it", "Cancel"],
             )
-            if answer == 0:
+            if answer == 1:
                 return path
             if answer == 2:
                 return None
@@ -223,8 +236,19 @@ class Saving(QObject):
     def _not_written(self, error: Exception) -> None:
         self.failed.emit(sentence_for(error))
 
-    def _forget_pasted(self) -> None:
+    def _opened(self) -> None:
         self._pasted_png = None
+        path = self._document.path
+        self._file_state = None if path is None else _state_of(path)
+
+
+def _state_of(path: Path) -> tuple[int, int] | None:
+    """What tells that a file is another one now: when it was written, and its size."""
+    try:
+        status = path.stat()
+    except OSError:
+        return None
+    return status.st_mtime_ns, status.st_size
 
 
 def beside(picture_path: Path, suffix: str, page: int = 0) -> Path:

@@ -175,10 +175,17 @@ class Walk(QObject):
         offered = None if following is None or self.is_placing else following
         sheet.tree.offer(None if offered is None else ("line", offered.line_id, None))
         sheet.another.setEnabled(can_mark and self.line is not None)
+        sheet.another.setText(self._another_words())
         sheet.next.setEnabled(following is not None)
         sheet.next.setText("Next line  (N)" if following is None else _next_words(following))
         self._say()
         self.moved.emit()
+
+    def _another_words(self) -> str:
+        reading, line = self._document.reading, self.line
+        if reading is None or line is None or reading.calipers_of(line.key, line.lead):
+            return "Another beat  (B)"
+        return f"Mark {line.quantity.label} {line.lead or ''}".rstrip() + "  (B)"
 
     def _say(self) -> None:
         self.idle_words.emit(self._words())

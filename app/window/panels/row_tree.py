@@ -9,12 +9,23 @@ from PySide6.QtCore import (
     QAbstractItemModel,
     QModelIndex,
     QPersistentModelIndex,
+    QPointF,
     QSize,
     Qt,
     QTimer,
     Signal,
 )
-from PySide6.QtGui import QBrush, QColor, QFont, QFontMetrics, QKeyEvent, QPalette
+from PySide6.QtGui import (
+    QBrush,
+    QColor,
+    QFont,
+    QFontMetrics,
+    QKeyEvent,
+    QPainter,
+    QPalette,
+    QPen,
+    QPolygonF,
+)
 from PySide6.QtWidgets import (
     QComboBox,
     QHeaderView,
@@ -59,7 +70,7 @@ _HEADERS = {
 # The longest text each column must show whole, and the room beside it for indent or sign.
 _LONGEST = {
     Column.NAME: ("QTc Framingham", 24),
-    Column.LEAD: ("Lead", 8),
+    Column.LEAD: ("aVF", 22),
     Column.COUNT: ("12", 8),
     Column.VALUE: ("1000 ± 99 ms ?", 24),
     Column.HAND: ("Colleague", 8),
@@ -330,6 +341,17 @@ class CellDelegate(QStyledItemDelegate):
 class HandDelegate(CellDelegate):
     """Types a colleague's figure; the reading, not the cell, takes it."""
 
+    def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: AnyIndex) -> None:
+        """The figure, or a line to write on as on a form."""
+        super().paint(painter, option, index)
+        row = _row_at(self._tree, index)
+        if row is not None and row.hand_key is not None and not row.hand:
+            y = option.rect.bottom() - 3
+            painter.save()
+            painter.setPen(QPen(QColor(theme.EDGE), 1.0, Qt.PenStyle.DotLine))
+            painter.drawLine(option.rect.left() + 3, y, option.rect.right() - 8, y)
+            painter.restore()
+
     def createEditor(
         self, parent: QWidget, _option: QStyleOptionViewItem, index: AnyIndex
     ) -> QWidget:
@@ -364,6 +386,22 @@ class LeadDelegate(CellDelegate):
         combo.activated.connect(lambda: self._take(combo))
         QTimer.singleShot(0, combo, combo.showPopup)
         return combo
+
+    def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: AnyIndex) -> None:
+        """The lead, and a small sign that another can be chosen."""
+        super().paint(painter, option, index)
+        row = _row_at(self._tree, index)
+        if row is None or row.line is None:
+            return
+        cell = option.rect
+        tip = QPointF(cell.right() - 6.0, cell.center().y() + 2.5)
+        sign = QPolygonF([tip, tip + QPointF(-3.5, -4.0), tip + QPointF(3.5, -4.0)])
+        painter.save()
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(QColor(theme.EDGE_INK))
+        painter.drawPolygon(sign)
+        painter.restore()
 
     def setEditorData(self, editor: QWidget, index: AnyIndex) -> None:
         row = _row_at(self._tree, index)

@@ -116,7 +116,7 @@ class Worksheet(QWidget):
         return line
 
     def _build(self) -> None:
-        self.add.setText("Add line")
+        self.add.setText("Add line ")
         self.add.setToolTip("Measure a quantity in a further lead")
         self.add.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
         self.add.setMenu(self.add_menu(self.add))

@@ -9,6 +9,7 @@ from collections.abc import Iterator
 
 import pytest
 from PySide6.QtCore import QTimer, qInstallMessageHandler, qWarning
+from PySide6.QtGui import QGuiApplication
 from pytestqt.exceptions import capture_exceptions
 from pytestqt.qtbot import QtBot
 
@@ -70,6 +71,19 @@ def test_a_sentence_made_for_the_reader_is_passed_on(hooks: list[str]) -> None:
     assert hooks == ["The picture is empty."]
 
 
+def test_a_fault_behind_its_own_box_opens_no_second_one(window: MainWindow) -> None:
+    told: list[str] = []
+
+    def tell(_title: str, text: str) -> None:
+        told.append(text)
+        window.show_fault("again")
+
+    window.ask.tell = tell  # type: ignore[method-assign]
+    window.show_fault("once")
+    window.show_fault("twice")
+    assert told == ["once", "twice"]
+
+
 def test_lack_of_memory_has_its_own_sentence() -> None:
     assert "memory" in sentence_for(MemoryError())
 
@@ -96,7 +110,6 @@ def test_the_log_can_be_copied(qtbot: QtBot, memory_log: MemoryLog, ask: Scripte
     qtbot.addWidget(window)
     logging.getLogger("app.test").warning("something to look into")
     window.actions_table.action("details").trigger()
-    from PySide6.QtGui import QGuiApplication
 
     assert "something to look into" in QGuiApplication.clipboard().text()
     window.show_fault(UNEXPECTED)

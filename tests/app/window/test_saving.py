@@ -39,6 +39,21 @@ def test_the_first_save_asks_and_the_second_does_not(
     assert len(load_reading(path).calipers) == 2
 
 
+@pytest.mark.parametrize(("answer", "calipers_in_file"), [("Cancel", 1), ("Save in its place", 2)])
+def test_a_file_somebody_else_changed_is_not_replaced_unasked(
+    marked: MainWindow, ask: ScriptedAsk, tmp_path: Path, answer: str, calipers_in_file: int
+) -> None:
+    path = tmp_path / "a.reading.json"
+    ask.files.append(path)
+    assert marked.saving.save()
+    path.write_text(path.read_text(encoding="utf-8") + "\n", encoding="utf-8")
+    measure(marked, "qt", "II", 300.0, 400.0)
+    ask.answers.append(answer)
+    assert marked.saving.save() == (answer != "Cancel")
+    assert "somebody else" in ask.asked[-1]
+    assert len(load_reading(path).calipers) == calipers_in_file
+
+
 def test_what_is_being_typed_is_saved_too(
     marked: MainWindow, ask: ScriptedAsk, tmp_path: Path
 ) -> None:
