@@ -81,7 +81,7 @@ class Jobs(QObject):
         self._threads.add(worker)
         self._awaited = worker
         self.busy_changed.emit(title)
-        QTimer.singleShot(delay_ms, worker, lambda: self._set_off(worker))
+        QTimer.singleShot(delay_ms, lambda: self._set_off(worker))
 
     def give_up(self) -> None:
         """Wait no longer for the present job."""

@@ -44,7 +44,9 @@ class EarlyPicture:
 
 def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWindow]:
     """Make the application and its window, with `path` on its way in."""
-    early = EarlyPicture(Path(path)) if path is not None and not path.endswith(SUFFIX) else None
+    file = None if path is None else Path(path).absolute()
+    is_picture = file is not None and not file.name.endswith(SUFFIX)
+    early = EarlyPicture(file) if file is not None and is_picture else None
     from PySide6.QtWidgets import QApplication
 
     from app.window import faults
@@ -58,8 +60,8 @@ def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWin
     apply_theme(app)
     window = MainWindow(memory_log=memory_log)
     faults.install_hooks(window.show_fault)
-    if path is not None:
-        window.opening.open_path(Path(path), None if early is None else early.result)
+    if file is not None:
+        window.opening.open_path(file, None if early is None else early.result)
     return app, window
 
 

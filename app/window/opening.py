@@ -89,10 +89,8 @@ class Opening(QObject):
         """
         if not self._may_leave():
             return
+        path = path.absolute()
         if path.name.endswith(SUFFIX):
-            if self._leaving is Leaving.DISCARD and path == self._document.path:
-                # Otherwise the edits just discarded would be offered again from the journal.
-                self._document.abandon()
             self._open_reading(path)
             return
         reading_path = beside(path, SUFFIX)
@@ -194,6 +192,9 @@ class Opening(QObject):
         self._decode(PASTED_NAME, partial(picture_from_bytes, png, PASTED_NAME), begin)
 
     def _open_reading(self, path: Path) -> None:
+        if self._leaving is Leaving.DISCARD and path == self._document.path:
+            # Otherwise the edits just discarded would be offered again from the journal.
+            self._document.abandon()
         try:
             reading = load_reading(path)
         except SmallsquareError as error:

@@ -384,7 +384,7 @@ class LeadDelegate(CellDelegate):
             combo.addItems(list(self._free_leads(row.line)))
         combo.view().setMinimumWidth(64)
         combo.activated.connect(lambda: self._take(combo))
-        QTimer.singleShot(0, combo, combo.showPopup)
+        QTimer.singleShot(0, combo.showPopup)
         return combo
 
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: AnyIndex) -> None:

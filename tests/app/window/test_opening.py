@@ -330,6 +330,16 @@ def test_discarded_edits_are_not_offered_again(
     assert ask.answers == []
 
 
+def test_discarded_edits_are_not_offered_by_way_of_the_picture_either(
+    qtbot: QtBot, opened: MainWindow, ask: ScriptedAsk, saved: Path, page: Path
+) -> None:
+    measure(opened, "qt", "II", 300.0, 400.0)
+    ask.answers += ["Discard", "Open that reading"]
+    opened.opening.open_path(page)
+    qtbot.waitUntil(lambda: not opened.document.is_modified())
+    assert reading_of(opened) == load_reading(saved)
+
+
 def test_closing_asks_and_may_be_called_off(opened: MainWindow, ask: ScriptedAsk) -> None:
     measure(opened, "qrs", "II", 300.0, 320.0)
     ask.answers.append("Cancel")
