@@ -97,9 +97,9 @@ THREE_RHYTHM_ROWS = Layout(
 def specimens() -> tuple[Specimen, ...]:
     """The pages of this folder."""
     scan = Scan(dpi=225.0, printed_scale=0.985, skew_deg=0.35, shift_px=(3.4, -2.3))
-    soft = Finish(blur_sigma_px=0.55, noise=1.2, shading=8.0, jpeg_quality=88)
+    soft = Finish(blur_sigma_px=0.45, noise=1.2, shading=8.0, jpeg_quality=88)
     # Grain does not compress without loss: the PNG pages are clean, as an office scanner's are.
-    clean = Finish(blur_sigma_px=0.5)
+    clean = Finish(blur_sigma_px=0.4)
     red, orange = Ruling(), Ruling(colour=GRID_COLOURS["orange"])
     half = replace(Layout(), pulse="stepped", chest_gain_mm_per_mv=5.0)
     half = replace(half, legend="25 mm/s   limb 10 mm/mV   chest 5 mm/mV   0.05 - 150 Hz")

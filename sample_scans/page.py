@@ -2,9 +2,8 @@
 
 Frames: ``picture_px``, (0, 0) the centre of the first pixel, y down; ``sheet_mm``, one small
 square = 1 whatever the printed size, x right, y down, bold lines at multiples of 5.
-Grid lines and the pen are drawn analytically: a pixel's darkness is the overlap of a
-one-pixel box with the line's width, measured along the line's normal, so that the centre of
-a line is where the map says to rounding (the tests measure it).
+Grid lines and the pen are drawn analytically (see `pen.line_overlap`), so that the centre of
+a line is where the map says: the tests measure it, and ask for 0.05 px.
 Colours mix in sRGB values, so that centroids of darkness are exact.
 """
 

@@ -25,6 +25,25 @@ from sample_scans.page import (
     render_page,
 )
 from sample_scans.waveform import LEADS, Recording, onsets_from_rr
+from tests.no_grid import no_grid_pictures, unscaled_grid_pictures
+
+__all__ = [
+    "RealRecording",
+    "dicom_recording",
+    "flat_page",
+    "invented_signal",
+    "layout_for",
+    "no_grid_pictures",
+    "page_from_signal",
+    "random_flat_page",
+    "real_page",
+    "real_recording",
+    "recording_names",
+    "recordings_missing",
+    "save",
+    "turned",
+    "unscaled_grid_pictures",
+]
 
 FloatArray = NDArray[np.float64]
 
@@ -148,6 +167,21 @@ def _random_finish(rng: np.random.Generator, *, one_bit: bool) -> dict[str, Any]
     }
 
 
+def turned(drawn: RenderedPage, quarter_turns: int, *, mirrored: bool = False) -> RenderedPage:
+    """The same page turned clockwise by quarter turns, after a left-right mirroring if asked."""
+    pixels, matrix = drawn.pixels, drawn.px_from_mm
+    if mirrored:
+        pixels = pixels[:, ::-1]
+        matrix = np.array([[-1.0, 0.0], [0.0, 1.0]]) @ matrix
+        matrix[0, 2] += pixels.shape[1] - 1.0
+    for _ in range(quarter_turns % 4):
+        pixels = np.rot90(pixels, -1)
+        # (x, y) goes to (height - 1 - y, x); the new width is the old height.
+        matrix = np.array([[0.0, -1.0], [1.0, 0.0]]) @ matrix
+        matrix[0, 2] += pixels.shape[1] - 1.0
+    return replace(drawn, pixels=np.ascontiguousarray(pixels), px_from_mm=matrix)
+
+
 def save(pixels: NDArray[np.uint8], path: Path, *, quality: int = 88) -> Path:
     """Write a picture as the file name's ending says (.png, .jpg, .tif, .webp)."""
     options = {"quality": quality} if path.suffix in (".jpg", ".jpeg", ".webp") else {}
@@ -169,6 +203,11 @@ class RealRecording:
 def recording_names() -> tuple[str, ...]:
     """The real recordings beside the repository; empty where they are absent."""
     return tuple(sorted(path.stem for path in RECORDINGS.glob("*.npz")))
+
+
+def recordings_missing() -> str | None:
+    """Why tests on real recordings must be skipped; None where the recordings are there."""
+    return None if recording_names() else "the real recordings are not beside the repository"
 
 
 def real_recording(name: str) -> RealRecording:
