@@ -5,6 +5,7 @@ All boxes are (left, top, right, bottom) in canvas px: view px plus the scroll p
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
@@ -36,7 +37,7 @@ class LabelRequest:
     outward : (float, float)
         Unit vector from the bar away from the marks, upright or level.
     sizes : sequence of (float, float)
-        Width and height of the full label, then of shorter ones.
+        Width and height of the full label, then of up to two shorter ones.
     must_show : bool
         The selected caliper's label is never dropped nor shortened.
     """
@@ -94,26 +95,36 @@ def centred_place(request: LabelRequest) -> LabelPlace:
     return LabelPlace(box[0], box[1], 0)
 
 
+# Where a label may stand: (cost of its own, which size, shift along the bar, stack outwards).
+_OPTIONS = sorted(
+    (size * _SHORT_COST + abs(shift) * _SHIFT_COST + stack * _STACK_COST, size, shift, stack)
+    for size in range(3)
+    for shift in (0.0, -1.0, 1.0)
+    for stack in (0.0, 1.0, 2.0)
+)
+
+
 def _best(
     request: LabelRequest,
     taken: Sequence[Box],
     others: Sequence[tuple[Box, Box]],
     ink_share: Callable[[Box], float],
 ) -> tuple[float, Box, int]:
-    options: list[tuple[float, Box, int]] = []
-    sizes = request.sizes[:1] if request.must_show else request.sizes
-    for index, size in enumerate(sizes):
-        for stack in (0.0, 1.0, 2.0):
-            for shift in (0.0, -1.0, 1.0):
-                box = _box(request, size, shift, stack)
-                cost = index * _SHORT_COST + abs(shift) * _SHIFT_COST + stack * _STACK_COST
-                cost += _INK_COST * ink_share(box)
-                cost += _OVERLAP_COST * sum(_shared(box, other) for other in taken)
-                for bar, slot in others:
-                    cost += _OTHER_BAR_COST * (_shared(box, bar) > 0.0)
-                    cost += _OTHER_SLOT_COST * (_shared(box, slot) > 0.0)
-                options.append((cost, box, index))
-    return min(options)
+    count = 1 if request.must_show else len(request.sizes)
+    best = math.inf, (0.0, 0.0, 0.0, 0.0), 0
+    for own_cost, index, shift, stack in _OPTIONS:
+        if own_cost >= best[0]:
+            break  # the options that follow cost at least as much by themselves
+        if index >= count:
+            continue
+        box = _box(request, request.sizes[index], shift, stack)
+        cost = own_cost + _INK_COST * ink_share(box)
+        cost += _OVERLAP_COST * sum(_shared(box, other) for other in taken)
+        for bar, slot in others:
+            cost += _OTHER_BAR_COST * (_shared(box, bar) > 0.0)
+            cost += _OTHER_SLOT_COST * (_shared(box, slot) > 0.0)
+        best = min(best, (cost, box, index))
+    return best
 
 
 def _box(request: LabelRequest, size: Size, shift: float, stack: float) -> Box:
@@ -146,9 +157,9 @@ def _bar_box(bar: Segment) -> Box:
 
 def _shared(one: Box, other: Box) -> float:
     """The share of the smaller box that both cover."""
+    if one[0] >= other[2] or other[0] >= one[2] or one[1] >= other[3] or other[1] >= one[3]:
+        return 0.0
     width = min(one[2], other[2]) - max(one[0], other[0])
     height = min(one[3], other[3]) - max(one[1], other[1])
-    if width <= 0.0 or height <= 0.0:
-        return 0.0
     areas = [(box[2] - box[0]) * (box[3] - box[1]) for box in (one, other)]
     return width * height / min(areas)

@@ -17,7 +17,8 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QFrame, QGraphicsScene, QGraphicsView, QWidget
 
-from app.reading import Caliper, CaliperKind, PicturePoint, quantity
+from app.reading import Caliper, CaliperKind, PicturePoint
+from app.reading import quantity as quantity_of
 from app.window.canvas import look
 from app.window.canvas.aim_mark import AimMark
 from app.window.canvas.camera import Camera
@@ -252,14 +253,14 @@ class SheetView(QGraphicsView):
 
     # Placing
 
-    def begin_placing(self, kind: CaliperKind, key: str | None, lead: str | None) -> None:
+    def begin_placing(self, kind: CaliperKind, quantity: str | None, lead: str | None) -> None:
         """Ask for a caliper's two places; what was being placed before is given up."""
         if self._document.reading is None:
             return
         self.cancel_gesture()
-        known = None if key is None else quantity(key)
+        known = None if quantity is None else quantity_of(quantity)
         placing_class = PlaceChain if known is not None and known.chained else PlaceCaliper
-        self._begin(placing_class(self, self._first_aim(), kind, key, lead))
+        self._begin(placing_class(self, self._first_aim(), kind, quantity, lead))
 
     def begin_scale_box(self) -> None:
         """Ask for a box over a known number of large squares."""
