@@ -65,7 +65,7 @@ TABLE: dict[str, CautionEntry] = {
         "Squares are {percent:.1f} % {wider} than {higher} on this picture.",
         "A stretched copy, print or photo: each direction is measured with its own scale, "
         "but where the stretch varies over the page the values do not follow.",
-        "non-uniform scale (computed)",
+        "ruling within ±2 %: EC11, IEC 60601-2-51 (from memory); non-uniform scale (computed)",
     ),
     "coarse_picture": CautionEntry(
         "Coarse picture: one pixel is {pixel:.3g} {unit}.",
@@ -129,17 +129,17 @@ TABLE: dict[str, CautionEntry] = {
         "all formulas (found, secondary source)",
     ),
     "bazett_outside_60_100": CautionEntry(
-        "Rate {rate:.0f}/min is outside 60 to 100: Bazett misleads there.",
+        "Rate {rate}/min is outside 60 to 100: Bazett misleads there.",
         "Bazett corrects too much at fast and too little at slow rates: see a second formula.",
         _RATE_RANGE,
-        too_close="Rate {rate:.0f} ± {rate_pm:.0f}/min is too close to call against {limit}: "
+        too_close="Rate {rate} ± {rate_pm}/min is too close to call against {limit}: "
         "outside 60 to 100 Bazett misleads.",
     ),
     "wide_qrs_qtc": CautionEntry(
-        "QRS {qrs:.0f} ms is 120 ms or more: a plain QTc reads too long.",
+        "QRS {qrs} ms is 120 ms or more: a plain QTc reads too long.",
         "The wide QRS itself lengthens QT; published corrections differ by more than 20 ms.",
         "Bogossian 2014; Wang 2017 (found); 120 ms: " + _PART_III,
-        too_close="QRS {qrs:.0f} ± {qrs_pm:.0f} ms is too close to call against 120 ms, "
+        too_close="QRS {qrs} ± {qrs_pm} ms is too close to call against 120 ms, "
         "from where on a plain QTc reads too long.",
     ),
     "qrs_not_measured_for_qtc": CautionEntry(
@@ -156,19 +156,19 @@ TABLE: dict[str, CautionEntry] = {
         "clinician should look now.",
     ),
     "axis_small_vector": CautionEntry(
-        "Small net QRS ({size_mm:.1f} mm): the angle is hardly determined.",
+        "Small net QRS ({size_mm} mm): the angle is hardly determined.",
         "Below 5 mm an error of 0.5 mm turns the axis by 5.7° and more.",
         "AHA/ACCF/HRS 2009 part III (found, secondary source); angle error (computed)",
-        too_close="Net QRS {size_mm:.1f} ± {size_pm_mm:.1f} mm is too close to call against "
+        too_close="Net QRS {size_mm} ± {size_pm_mm} mm is too close to call against "
         "5 mm, below which the angle is hardly determined.",
     ),
     "one_sided_deflection": CautionEntry(
-        "No opposite deflection marked in lead {lead}: taken as none.",
+        "{parts} not marked in lead {lead}: taken as none.",
         "The net height is R less Q and S; an unmarked one would turn the axis.",
         "Novosel 1999 (found)",
     ),
     "rounding": CautionEntry(
-        "Shown rounded; worked out it is {value:.1f}, below {limit}.",
+        "Shown rounded; worked out it is {value:.1f}, {side} {limit}.",
         "Limits are compared before rounding.",
         "JCGM 100:2008, 7.2.6 (from memory)",
     ),

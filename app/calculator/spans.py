@@ -12,7 +12,7 @@ from app.calculator.uncertainty import Axis, Estimate, FloatArray, LegError, leg
 from app.reading.calibration import Calibration
 from app.reading.marks import Caliper, CaliperKind
 from app.reading.model import Reading
-from imaging.sheet_map import SheetMap
+from imaging.sheet_map import BoolArray, SheetMap
 
 NO_SCALE = "Give the scale first: the millimetre grid of this picture is not known yet."
 # Far outside what recorders do (10 to 100 mm/s, 2.5 to 40 mm/mV: from memory, practice).
@@ -63,7 +63,7 @@ def measure_spans(reading: Reading, calipers: Sequence[Caliper]) -> list[Span]:
     flat_px = ends_px.reshape(-1, 2)
     flat_mm = sheet_map.to_mm(flat_px).reshape(-1, 2, 2)
     span_mm = flat_mm[:, 1] - flat_mm[:, 0]
-    covered = sheet_map.covers(flat_px).reshape(-1, 2).all(axis=1)
+    covered: BoolArray = np.asarray(sheet_map.covers(flat_px).reshape(-1, 2).all(axis=1))
     # The grid's scatter belongs to the legs; what is left of the map's error is its scale.
     map_mm = sheet_map.span_standard_error_mm(start_px, end_px)
     scale_mm = np.sqrt(np.maximum(map_mm**2 - 2.0 * sheet_map.scatter_mm**2, 0.0))
