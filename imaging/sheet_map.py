@@ -40,7 +40,9 @@ class Coverage:
 
     def cells(self) -> BoolArray:
         """Unpack to a boolean array, shape (rows, columns)."""
-        return np.array([[character == "1" for character in row] for row in self.rows], dtype=bool)
+        width = len(self.rows[0]) if self.rows else 0
+        characters = np.frombuffer("".join(self.rows).encode("ascii"), dtype=np.uint8)
+        return np.asarray(characters.reshape(len(self.rows), width) == ord("1"))
 
     def covers(self, points_px: FloatArray) -> BoolArray:
         """Say for each point, shape (N, 2), whether its cell was seen; outside is False."""
