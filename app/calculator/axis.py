@@ -10,7 +10,7 @@ from app.calculator.cautions import caution
 from app.calculator.display import shown_number
 from app.calculator.heights import NetHeight, net_heights, not_marked
 from app.calculator.lines import Marked
-from app.calculator.make_value import given, refused
+from app.calculator.make_value import caliper_ids, given, refused
 from app.calculator.uncertainty import Axis, Estimate, Verdict, against_limit, combine
 from app.calculator.values import Caution, Value
 
@@ -49,15 +49,16 @@ def axis_values(marked: Marked) -> list[Value]:
         return []
     found = [nets[lead] for lead in LEADS if lead in nets]
     lines = [line for net in found for line in net.lines]
+    ids = caliper_ids(lines)
     sentence = _what_is_missing(nets)
     if sentence:
-        return [refused("qrs_axis", sentence, _METHOD, lines, lead=None)]
+        return [refused("qrs_axis", sentence, _METHOD, ids, lead=None)]
     lead_i, lead_avf = (net.estimate for net in found)
     assert lead_i is not None  # what is missing was said above
     assert lead_avf is not None
     if _is_indeterminate(lead_i, lead_avf):
         sentence = "The net QRS in I and aVF is not told from none: the axis is indeterminate."
-        return [refused("qrs_axis", sentence, _METHOD, lines, lead=None)]
+        return [refused("qrs_axis", sentence, _METHOD, ids, lead=None)]
     beats = min(net.n for net in found)
     cautions = [
         *small_vector(_size_mm(marked, lead_i, lead_avf)),
@@ -65,8 +66,18 @@ def axis_values(marked: Marked) -> list[Value]:
         *(said for net in found for said in not_marked(net)),
         *single_beat(beats=beats),
     ]
-    axis = _angle(lead_i, lead_avf)
-    return [given("qrs_axis", axis, _METHOD, lines, cautions, n=beats, lead=None)]
+    axis = axis_of(lead_i, lead_avf)
+    return [given("qrs_axis", axis, _METHOD, ids, cautions, n=beats, lead=None)]
+
+
+def axis_of(lead_i: Estimate, lead_avf: Estimate) -> Estimate:
+    """The axis in degrees with the errors of both leads carried over; not for no vector."""
+    square = vector_size(lead_i.value, lead_avf.value) ** 2
+    return combine(
+        frontal_axis_deg(lead_i.value, lead_avf.value),
+        (math.degrees(-AUGMENTED * lead_avf.value / square), lead_i),
+        (math.degrees(AUGMENTED * lead_i.value / square), lead_avf),
+    )
 
 
 def small_vector(size_mm: Estimate) -> list[Caution]:
@@ -97,7 +108,7 @@ def _is_indeterminate(lead_i: Estimate, lead_avf: Estimate) -> bool:
         return True
     size = _size(lead_i, lead_avf)
     # An error at right angles to the vector that is as long as the vector itself is 1 rad.
-    across = math.radians(_angle(lead_i, lead_avf).plus_minus) * size.value
+    across = math.radians(axis_of(lead_i, lead_avf).plus_minus) * size.value
     return size.value <= max(size.plus_minus, across)
 
 
@@ -115,12 +126,3 @@ def _size_mm(marked: Marked, lead_i: Estimate, lead_avf: Estimate) -> Estimate:
     size_mv = _size(lead_i, lead_avf)
     gain = marked.reading.calibration.gain_for(LEADS[0]).value
     return combine(size_mv.value * gain, (gain, size_mv))
-
-
-def _angle(lead_i: Estimate, lead_avf: Estimate) -> Estimate:
-    square = vector_size(lead_i.value, lead_avf.value) ** 2
-    return combine(
-        frontal_axis_deg(lead_i.value, lead_avf.value),
-        (math.degrees(-AUGMENTED * lead_avf.value / square), lead_i),
-        (math.degrees(AUGMENTED * lead_i.value / square), lead_avf),
-    )

@@ -1,6 +1,7 @@
 """Every caution there is: its line, its reason, its source. One function produces each.
 
-When a caution fires is decided in `caution_rules`; here is only what it says.
+When a caution fires is decided in `caution_rules`, `rhythm`, `intervals`, `qtc_cautions`,
+`heights` and `axis`; here is only what it says.
 """
 
 from __future__ import annotations
@@ -119,7 +120,7 @@ TABLE: dict[str, CautionEntry] = {
         NO_SOURCE,
     ),
     "marks_disagree": CautionEntry(
-        "QT in {lead} was marked as long as the mean RR: one of them is wrong.",
+        "{place} was marked as long as the mean RR: one of them is wrong.",
         "A QT as long as the RR leaves no room for the next beat.",
         "computed",
     ),

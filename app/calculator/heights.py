@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from app.calculator.caution_rules import line_cautions, single_beat
 from app.calculator.cautions import caution
 from app.calculator.lines import Line, Marked, lead_order
-from app.calculator.make_value import beats_in_words, given, refused
+from app.calculator.make_value import beats_in_words, caliper_ids, given, refused
 from app.calculator.uncertainty import Axis, Estimate, combine
 from app.calculator.values import Caution, Value
 
@@ -83,7 +83,7 @@ def _part_value(marked: Marked, line: Line) -> Value:
     gain = marked.reading.calibration.gain_for(line.lead).value
     method = f"height in mm / {gain:g} mm/mV"
     if line.mean is None:
-        return refused(line.key, line.refusal, method, [line], lead=line.lead)
+        return refused(line.key, line.refusal, method, line.caliper_ids, lead=line.lead)
     cautions = [
         *line_cautions(marked.reading, Axis.DOWN, [line]),
         *single_beat(beats=line.n),
@@ -92,7 +92,7 @@ def _part_value(marked: Marked, line: Line) -> Value:
         line.key,
         line.mean,
         f"{method}, {beats_in_words(line)}",
-        [line],
+        line.caliper_ids,
         cautions,
         n=line.n,
         lead=line.lead,
@@ -101,12 +101,13 @@ def _part_value(marked: Marked, line: Line) -> Value:
 
 
 def _net_value(marked: Marked, net: NetHeight) -> Value:
+    ids = caliper_ids(net.lines)
     if net.estimate is None:
-        return refused("net_qrs", net.refusal, NET_METHOD, net.lines, lead=net.lead)
+        return refused("net_qrs", net.refusal, NET_METHOD, ids, lead=net.lead)
     cautions = [
         *line_cautions(marked.reading, Axis.DOWN, net.lines),
         *not_marked(net),
         *single_beat(beats=net.n),
     ]
     method = f"{NET_METHOD}; {net.marked_parts} marked"
-    return given("net_qrs", net.estimate, method, net.lines, cautions, n=net.n, lead=net.lead)
+    return given("net_qrs", net.estimate, method, ids, cautions, n=net.n, lead=net.lead)

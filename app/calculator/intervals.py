@@ -6,11 +6,11 @@ from app.calculator.caution_rules import line_cautions, rounding, single_beat
 from app.calculator.cautions import caution
 from app.calculator.lines import Line, Marked
 from app.calculator.make_value import beats_in_words, given, refused
-from app.calculator.uncertainty import Axis, Verdict, against_limit, combine
+from app.calculator.qtc_cautions import WIDE_QRS_MS, marks_disagree
+from app.calculator.uncertainty import Axis
 from app.calculator.values import Caution, Value
 
 INTERVALS = ("p_duration", "pr", "qrs", "qt")
-WIDE_QRS_MS = 120.0
 _LIMITS_MS = {"qrs": (WIDE_QRS_MS,)}
 
 
@@ -23,7 +23,7 @@ def _value_of(marked: Marked, line: Line) -> Value:
     speed = marked.reading.calibration.paper_speed_mm_per_s.value
     method = f"width in mm / {speed:g} mm/s"
     if line.mean is None:
-        return refused(line.key, line.refusal, method, [line], lead=line.lead)
+        return refused(line.key, line.refusal, method, line.caliper_ids, lead=line.lead)
     cautions = [
         *line_cautions(marked.reading, Axis.ALONG, [line]),
         *single_beat(beats=line.n),
@@ -36,7 +36,7 @@ def _value_of(marked: Marked, line: Line) -> Value:
         line.key,
         line.mean,
         f"{method}, {beats_in_words(line)}",
-        [line],
+        line.caliper_ids,
         cautions,
         n=line.n,
         lead=line.lead,
@@ -47,13 +47,3 @@ def _value_of(marked: Marked, line: Line) -> Value:
 def single_lead(line: Line) -> list[Caution]:
     """Beside an interval of one named lead; without a name `no_lead` stands instead."""
     return [] if line.lead is None else [caution("single_lead_interval")]
-
-
-def marks_disagree(qt: Line, rr: Line | None) -> list[Caution]:
-    """Beside a QT that is not shorter than the mean RR by more than their ±."""
-    if qt.mean is None or rr is None or rr.mean is None:
-        return []
-    room = combine(rr.mean.value - qt.mean.value, (1.0, rr.mean), (-1.0, qt.mean))
-    if against_limit(-room.value, room.plus_minus, 0.0) is Verdict.BELOW:
-        return []
-    return [caution("marks_disagree", lead=qt.lead if qt.lead is not None else "no lead")]

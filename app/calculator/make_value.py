@@ -14,14 +14,14 @@ def given(
     key: str,
     estimate: Estimate,
     method: str,
-    lines: Sequence[Line],
+    ids: Sequence[int],
     cautions: Sequence[Caution],
     *,
     n: int,
     lead: str | None,
     spread: float | None = None,
 ) -> Value:
-    """A value with its ±, resting on lines."""
+    """A value with its ±, resting on the calipers of those ids."""
     entry = CATALOGUE[key]
     return Value(
         key=key,
@@ -35,7 +35,7 @@ def given(
         lead=lead,
         spread=spread,
         cautions=tuple(cautions),
-        caliper_ids=caliper_ids(lines),
+        caliper_ids=tuple(ids),
     )
 
 
@@ -43,7 +43,7 @@ def refused(
     key: str,
     sentence: str,
     method: str,
-    lines: Sequence[Line],
+    ids: Sequence[int],
     *,
     lead: str | None,
     cautions: Sequence[Caution] = (),
@@ -61,7 +61,7 @@ def refused(
         n=0,
         lead=lead,
         cautions=tuple(cautions),
-        caliper_ids=caliper_ids(lines),
+        caliper_ids=tuple(ids),
         refusal=sentence,
     )
 

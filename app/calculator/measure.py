@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
-
-from app.calculator.catalogue import CATALOGUE
 from app.calculator.caution_rules import sheet_cautions
-from app.calculator.rate import rate_of
-from app.calculator.spans import NO_SCALE, Span, axis_of, measure_spans
-from app.calculator.uncertainty import Axis, Estimate
-from app.calculator.values import Caution, Value
+from app.calculator.make_value import given, refused
+from app.calculator.rhythm import rate_of
+from app.calculator.spans import NO_SCALE, axis_of, measure_spans
+from app.calculator.uncertainty import Axis
+from app.calculator.values import Value
 from app.reading.marks import Caliper, CaliperKind
 from app.reading.model import Reading
 
@@ -27,20 +25,19 @@ def measure_caliper(reading: Reading, caliper: Caliper) -> list[Value]:
     not belong to the reading, whose map and calibration alone count.
     """
     (span,) = measure_spans(reading, [caliper])
-    axis = axis_of(caliper)
+    axis, lead, ids = axis_of(caliper), caliper.lead, (caliper.caliper_id,)
     method = _method(reading, caliper, axis)
     keys = _KEYS[caliper.kind]
     if span.estimate is None:
         sentence = span.refusal if span.refusal == NO_SCALE else f"This caliper {span.refusal}"
-        return [replace(_value(key, span, None, method), refusal=sentence) for key in keys]
-    cautions = sheet_cautions(reading, axis, caliper.lead, covered=span.covered)
-    estimates = [span.estimate]
-    if len(keys) > 1:
-        estimates.append(rate_of(span.estimate))
-    return [
-        _value(key, span, estimate, method, tuple(cautions))
-        for key, estimate in zip(keys, estimates, strict=True)
-    ]
+        return [refused(key, sentence, method, ids, lead=lead) for key in keys]
+    cautions = sheet_cautions(reading, axis, lead, covered=span.covered)
+    gaps = caliper.teeth - 1
+    values = [given(keys[0], span.estimate, method, ids, cautions, n=gaps, lead=lead)]
+    for key in keys[1:]:
+        rate = rate_of(span.estimate)
+        values.append(given(key, rate, f"60 / pitch, {method}", ids, cautions, n=gaps, lead=lead))
+    return values
 
 
 def _method(reading: Reading, caliper: Caliper, axis: Axis) -> str:
@@ -49,28 +46,6 @@ def _method(reading: Reading, caliper: Caliper, axis: Axis) -> str:
         return f"height in mm / {gain:g} mm/mV"
     speed = reading.calibration.paper_speed_mm_per_s.value
     if caliper.kind is CaliperKind.COMB:
-        return f"width in mm / {caliper.teeth - 1} gaps / {speed:g} mm/s"
+        gaps = caliper.teeth - 1
+        return f"width in mm / {gaps} gap{'s' if gaps > 1 else ''} / {speed:g} mm/s"
     return f"width in mm / {speed:g} mm/s"
-
-
-def _value(
-    key: str,
-    span: Span,
-    estimate: Estimate | None,
-    method: str,
-    cautions: tuple[Caution, ...] = (),
-) -> Value:
-    entry = CATALOGUE[key]
-    return Value(
-        key=key,
-        label=entry.label,
-        value=None if estimate is None else estimate.value,
-        unit=entry.unit,
-        plus_minus=None if estimate is None else estimate.plus_minus,
-        method=method,
-        source=entry.source,
-        n=0 if estimate is None else span.caliper.teeth - 1,
-        lead=span.caliper.lead,
-        cautions=cautions,
-        caliper_ids=(span.caliper.caliper_id,),
-    )

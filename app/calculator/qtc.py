@@ -9,14 +9,20 @@ from dataclasses import dataclass
 from app.calculator.caution_rules import line_cautions, rounding, single_beat
 from app.calculator.cautions import caution
 from app.calculator.display import shown_number
-from app.calculator.intervals import WIDE_QRS_MS, marks_disagree, single_lead
+from app.calculator.intervals import single_lead
 from app.calculator.lines import Line, Marked
-from app.calculator.make_value import beats_in_words, given, refused
-from app.calculator.rate import BAZETT_RANGE_PER_MIN, rate_of, rhythm_cautions
-from app.calculator.uncertainty import Axis, Estimate, Verdict, against_limit, combine
+from app.calculator.make_value import beats_in_words, caliper_ids, given, refused
+from app.calculator.qtc_cautions import (
+    HIGH_RISK_MS,
+    bazett_range,
+    high_risk,
+    marks_disagree,
+    wide_qrs,
+    widest_qrs,
+)
+from app.calculator.rhythm import rate_of, rhythm_cautions
+from app.calculator.uncertainty import Axis, Estimate, combine
 from app.calculator.values import Caution, Value
-
-HIGH_RISK_MS = 500.0
 
 
 def bazett_ms(qt_ms: float, rr_s: float) -> float:
@@ -102,27 +108,23 @@ def qtc_values(marked: Marked) -> list[Value]:
 
 def _value_of(marked: Marked, key: str, formula: Formula, qt: Line, rr: Line | None) -> Value:
     lines = [qt] if rr is None else [qt, rr]
-    if qt.mean is None:
-        return refused(key, qt.refusal, formula.words, lines, lead=qt.lead)
-    if rr is None or rr.mean is None:
-        sentence = rr.refusal if rr is not None else "Mark an RR interval: QTc needs the rate."
-        missing = [caution("no_rr_for_qtc")]
-        return refused(key, sentence, formula.words, lines, lead=qt.lead, cautions=missing)
-    disagree = marks_disagree(qt, rr)
-    if disagree:
-        sentence = "QT leaves no room in the mean RR: check both before QTc is worked out."
-        return refused(key, sentence, formula.words, lines, lead=qt.lead, cautions=disagree)
-    qtc = formula.correct(qt.mean, rr.mean)
-    rate = rate_of(rr.mean)
+    ids = caliper_ids(lines)
+    sentence, why = _refusal(qt, rr)
+    if sentence:
+        return refused(key, sentence, formula.words, ids, lead=qt.lead, cautions=why)
+    assert qt.mean is not None  # a missing mean was refused above
+    assert rr is not None
+    assert rr.mean is not None
+    qtc, rate = formula.correct(qt.mean, rr.mean), rate_of(rr.mean)
     if qtc.value <= 0.0:
         sentence = f"This formula has no meaning at a rate of {rate.value:.0f}/min."
-        return refused(key, sentence, formula.words, lines, lead=qt.lead)
+        return refused(key, sentence, formula.words, ids, lead=qt.lead)
     cautions = [
         *high_risk(qtc),
         *line_cautions(marked.reading, Axis.ALONG, lines),
         *(bazett_range(rate) if key == "qtc_bazett" else ()),
         *wide_qrs(widest_qrs(marked)),
-        *rhythm_cautions(rr),
+        *rhythm_cautions(rr, rate),
         *single_beat(qt.n, rr.n),
         *single_lead(qt),
         caution("qt_method"),
@@ -133,58 +135,18 @@ def _value_of(marked: Marked, key: str, formula: Formula, qt: Line, rr: Line | N
         f"({beats_in_words(qt)}), RR {rr.mean.value / 1000.0:.3f} s "
         f"({beats_in_words(rr, 'interval')})"
     )
-    return given(key, qtc, method, lines, cautions, n=qt.n, lead=qt.lead)
+    return given(key, qtc, method, ids, cautions, n=qt.n, lead=qt.lead)
 
 
-def high_risk(qtc: Estimate) -> list[Caution]:
-    """500 ms or more, or too close to call."""
-    verdict = against_limit(qtc.value, qtc.plus_minus, HIGH_RISK_MS)
-    if verdict is Verdict.BELOW:
-        return []
-    return [caution("qtc_500", too_close=verdict is Verdict.TOO_CLOSE)]
-
-
-def bazett_range(rate: Estimate) -> list[Caution]:
-    """A rate below 60 or above 100, or too close to call against one of them."""
-    lowest, highest = BAZETT_RANGE_PER_MIN
-    text = shown_number(rate.value, rate.plus_minus)
-    against_lowest = against_limit(rate.value, rate.plus_minus, lowest)
-    against_highest = against_limit(rate.value, rate.plus_minus, highest)
-    for verdict, limit in ((against_lowest, lowest), (against_highest, highest)):
-        if verdict is Verdict.TOO_CLOSE:
-            plus_minus = shown_number(rate.plus_minus, rate.plus_minus)
-            return [
-                caution(
-                    "bazett_outside_60_100",
-                    too_close=True,
-                    rate=text,
-                    rate_pm=plus_minus,
-                    limit=f"{limit:g}",
-                )
-            ]
-    if against_lowest is Verdict.BELOW or against_highest is Verdict.ABOVE:
-        return [caution("bazett_outside_60_100", rate=text)]
-    return []
-
-
-def widest_qrs(marked: Marked) -> Estimate | None:
-    """The longest QRS over the leads it was marked in: the nearest there is to a global one."""
-    means = [line.mean for line in marked.lines_of("qrs") if line.mean is not None]
-    return max(means, key=lambda mean: mean.value, default=None)
-
-
-def wide_qrs(qrs: Estimate | None) -> list[Caution]:
-    """QRS not measured, 120 ms or more, or too close to call."""
-    if qrs is None:
-        return [caution("qrs_not_measured_for_qtc")]
-    verdict = against_limit(qrs.value, qrs.plus_minus, WIDE_QRS_MS)
-    if verdict is Verdict.BELOW:
-        return []
-    return [
-        caution(
-            "wide_qrs_qtc",
-            too_close=verdict is Verdict.TOO_CLOSE,
-            qrs=shown_number(qrs.value, qrs.plus_minus),
-            qrs_pm=shown_number(qrs.plus_minus, qrs.plus_minus),
-        )
-    ]
+def _refusal(qt: Line, rr: Line | None) -> tuple[str, list[Caution]]:
+    """Why there is no QTc, with the caution that says more; empty where there is one."""
+    if qt.mean is None:
+        return qt.refusal, []
+    if rr is None:
+        return "Mark an RR interval: QTc needs the rate.", [caution("no_rr_for_qtc")]
+    if rr.mean is None:
+        return rr.refusal, [caution("no_rr_for_qtc")]
+    disagree = marks_disagree(qt, rr)
+    if disagree:
+        return "QT leaves no room in the mean RR: check both first.", disagree
+    return "", []
