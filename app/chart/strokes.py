@@ -1,0 +1,54 @@
+"""Lines drawn to a fraction of a pixel, so that a leg lies where it was placed."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+from PIL import Image
+
+from app.chart.fonts import Colour
+
+Segment = tuple[float, float, float, float]
+
+
+def draw_stroke(
+    image: Image.Image,
+    segment: Segment,
+    width_px: float,
+    colour: Colour,
+    *,
+    opacity: float = 1.0,
+    within_px: tuple[int, int] | None = None,
+) -> None:
+    """Draw a straight line with smooth edges and flat ends over an RGB image.
+
+    Parameters
+    ----------
+    image : Image
+        Mode RGB; drawn on. (0, 0) is the centre of the first pixel.
+    segment : (float, float, float, float)
+        x1, y1, x2, y2 in the image's pixels.
+    width_px, colour, opacity
+        Of the line; opacity 0 to 1.
+    within_px : (int, int) or None
+        Width and height of the part, from the corner, that may be drawn on; None: all of it.
+    """
+    x1, y1, x2, y2 = segment
+    limit_x, limit_y = within_px or image.size
+    reach = width_px / 2.0 + 1.0
+    left, top = (max(0, math.floor(low - reach)) for low in (min(x1, x2), min(y1, y2)))
+    right = min(limit_x, math.ceil(max(x1, x2) + reach) + 1)
+    bottom = min(limit_y, math.ceil(max(y1, y2) + reach) + 1)
+    if right <= left or bottom <= top:
+        return
+    length = math.hypot(x2 - x1, y2 - y1)
+    along_x, along_y = ((x2 - x1) / length, (y2 - y1) / length) if length else (1.0, 0.0)
+    dx = np.arange(left, right, dtype=np.float32)[np.newaxis, :] - np.float32((x1 + x2) / 2.0)
+    dy = np.arange(top, bottom, dtype=np.float32)[:, np.newaxis] - np.float32((y1 + y2) / 2.0)
+    across = np.abs(dx * along_y - dy * along_x)
+    along = np.abs(dx * along_x + dy * along_y)
+    cover = np.clip(width_px / 2.0 + 0.5 - across, 0.0, min(1.0, width_px))
+    cover *= np.clip(length / 2.0 + 0.5 - along, 0.0, 1.0)
+    mask = Image.fromarray(np.round(cover * (255.0 * opacity)).astype(np.uint8))
+    image.paste(colour, (left, top, right, bottom), mask)

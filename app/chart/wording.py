@@ -1,0 +1,178 @@
+"""What a filed reading says in words, the same on the picture, in JSON and in CSV."""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from app.calculator import Value, format_value
+from app.calculator.catalogue import CATALOGUE
+from app.calculator.display import shown_number, with_unit
+from app.reading import (
+    Calibration,
+    Caliper,
+    CaliperKind,
+    Evidence,
+    HandFigure,
+    Reading,
+    Setting,
+    quantity,
+)
+from imaging.sheet_map import SheetMap
+
+DISCLAIMER = (
+    "A calculation aid: it diagnoses nothing. A licensed clinician decides, by the local "
+    "guideline; the original tracing remains the record, the marks are an addition to it."
+)
+PLUS_MINUS_MEANS = (
+    "± is two standard errors of the grid and the marks. It does not contain a recorder whose "
+    "speed or gain is off, nor two readers' different idea of where a wave ends."
+)
+UNCONFIRMED_MARK = "?"
+
+_RESTS_ON = {
+    Evidence.DEFAULT: "a default, nothing on the page",
+    Evidence.PULSE: "the calibration pulse",
+    Evidence.LEGEND: "the printed legend",
+    Evidence.READER: "what the reader entered",
+}
+_FREE_NAMES = {
+    CaliperKind.TIME: "Time",
+    CaliperKind.HEIGHT: "Height",
+    CaliperKind.COMB: "Comb",
+}
+
+
+def rests_on(setting: Setting) -> str:
+    """What a setting rests on."""
+    return _RESTS_ON[setting.evidence]
+
+
+def settings_of(calibration: Calibration) -> list[tuple[str, Setting, str]]:
+    """Name, setting and unit of each setting there is."""
+    rows = [
+        ("Paper speed", calibration.paper_speed_mm_per_s, "mm/s"),
+        ("Gain", calibration.gain_mm_per_mv, "mm/mV"),
+    ]
+    if calibration.chest_gain_mm_per_mv is not None:
+        rows.append(("Gain in V1 to V6", calibration.chest_gain_mm_per_mv, "mm/mV"))
+    return rows
+
+
+def confirmed_by(reading: Reading, setting: Setting) -> str | None:
+    """Who says that a setting is so; None where nobody does."""
+    if not setting.confirmed:
+        return None
+    return reading.reader.strip() or "a reader who is not named"
+
+
+def setting_sentence(reading: Reading, name: str, setting: Setting, unit: str) -> str:
+    """One setting with what it rests on and who has confirmed it."""
+    who = confirmed_by(reading, setting)
+    said = "NOT confirmed" if who is None else f"confirmed by {who}"
+    return f"{name} {setting.value:g} {unit}: rests on {rests_on(setting)}; {said}."
+
+
+def largest_error_mm(sheet_map: SheetMap) -> float | None:
+    """The largest one-sigma error of a point where the grid was seen; None if nowhere."""
+    coverage = sheet_map.coverage
+    rows, columns = np.nonzero(coverage.cells())
+    if rows.size == 0:
+        return None
+    centres_px = (np.column_stack([columns, rows]) + 0.5) * coverage.cell_px - 0.5
+    last_px = np.array(sheet_map.picture_size_px, dtype=np.float64) - 1.0
+    largest = float(np.max(sheet_map.standard_error_mm(np.minimum(centres_px, last_px))))
+    return largest if math.isfinite(largest) else None
+
+
+def grid_sentences(sheet_map: SheetMap | None) -> list[str]:
+    """What is known of the grid, a sentence each."""
+    if sheet_map is None:
+        return ["Grid: none found and no scale given."]
+    found = "given by a box the reader drew" if sheet_map.source == "reader" else "found"
+    error_mm = largest_error_mm(sheet_map)
+    error = "not known" if error_mm is None else f"at most {error_mm:.2g} mm where it was seen"
+    certain = "certain" if sheet_map.scale_is_certain else "NOT certain"
+    sentences = [
+        f"Grid {found}: {sheet_map.x_pitch_px_per_mm:.3f} px per small square along the paper, "
+        f"{sheet_map.y_pitch_px_per_mm:.3f} px down it.",
+        f"Standard error of a point: {error}. Scale (1 mm or 5 mm): {certain}.",
+    ]
+    if sheet_map.turn_deg or sheet_map.mirrored:
+        mirrored = ", mirrored" if sheet_map.mirrored else ""
+        sentences.append(
+            f"The sheet lies turned by {sheet_map.turn_deg}°{mirrored} on the picture."
+        )
+    return [*sentences, *sheet_map.evidence]
+
+
+def unconfirmed_sentences(reading: Reading) -> list[str]:
+    """Everything a filed value rests on that nobody vouches for, a sentence each."""
+    said = []
+    if reading.sheet_map is None:
+        said.append("The scale is not known: no grid was found and none was given.")
+    elif not reading.sheet_map.scale_is_certain:
+        said.append(
+            "The scale is not certain: lines of 1 mm and 5 mm could not be told apart, so every "
+            "value may be off five times."
+        )
+    said += [
+        f"{name} {setting.value:g} {unit} rests on {rests_on(setting)}; nobody has confirmed it."
+        for name, setting, unit in settings_of(reading.calibration)
+        if not setting.confirmed
+    ]
+    if not reading.reader.strip():
+        said.append("The reader is not named.")
+    return said
+
+
+def is_unconfirmed(value: Value) -> bool:
+    """Whether a value rests on a setting nobody has confirmed, or on an uncertain scale."""
+    return any(
+        caution.code.endswith("_unconfirmed") or caution.code == "scale_uncertain"
+        for caution in value.cautions
+    )
+
+
+def value_text(value: Value) -> str:
+    """A value with its ±, marked while what it rests on is not confirmed."""
+    if value.value is None:
+        return "no value"
+    text = format_value(value)
+    return f"{text} {UNCONFIRMED_MARK}" if is_unconfirmed(value) else text
+
+
+def short_value_text(value: Value) -> str:
+    """A value without its ±, for a label in a crowd; the panel has it in full."""
+    if value.value is None or value.plus_minus is None:
+        return value_text(value)
+    text = with_unit(shown_number(value.value, value.plus_minus), value.unit)
+    return f"{text} {UNCONFIRMED_MARK}" if is_unconfirmed(value) else text
+
+
+def hand_figure_text(figure: HandFigure) -> str:
+    """A colleague's figure with its name, lead and unit."""
+    entry = CATALOGUE.get(figure.key)
+    name, unit = (figure.key, "") if entry is None else (entry.label, entry.unit)
+    number = f"{figure.value:g}"
+    return " ".join(filter(None, [name, figure.lead, with_unit(number, unit) if unit else number]))
+
+
+def caliper_name(caliper: Caliper) -> str:
+    """ "QRS II·1": what, in which lead, which beat; a free caliper by its number."""
+    if caliper.quantity is None:
+        name = f"{_FREE_NAMES[caliper.kind]} {caliper.caliper_id}"
+    else:
+        known = quantity(caliper.quantity)
+        name = caliper.quantity if known is None else known.label
+    if caliper.kind is CaliperKind.COMB:
+        name += f" ×{caliper.teeth}"
+    if caliper.lead is not None:
+        name += f" {caliper.lead}"
+    return name if caliper.beat is None else f"{name}·{caliper.beat}"
+
+
+def moment(text: str) -> str:
+    """An ISO 8601 moment with a space where people expect one; says so where there is none."""
+    return text.replace("T", " ", 1) if text else "not recorded"
