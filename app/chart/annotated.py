@@ -11,6 +11,7 @@ from PIL.PngImagePlugin import PngInfo
 
 from app.calculator import Value
 from app.chart.caliper_lines import Frame
+from app.chart.errors import PictureDiffers
 from app.chart.fonts import Colour, Face, face
 from app.chart.ink import Ink
 from app.chart.panel import PAPER, Panel
@@ -38,6 +39,8 @@ _PLATE: Colour = (250, 253, 253)
 _PLATE_EDGE: Colour = (127, 166, 173)
 _RIM: Colour = (255, 255, 255)
 _SMALLEST_LETTER_PX = 14
+# Width of the panel in letter heights: room for the whole table, but no endless lines.
+_LEAST_PANEL, _MOST_PANEL = 96, 130
 _ROWS_AT_ONCE = 512
 
 
@@ -56,14 +59,24 @@ def annotate(picture: Picture, reading: Reading) -> Image.Image:
     Image
         Mode RGB. Its pixel (x, y) is the picture's, as far as the picture reaches; below it
         stands the panel, as high as it needs to be.
+
+    Raises
+    ------
+    PictureDiffers
+        If the picture is not as large as the one that was read.
     """
+    if picture.size_px != reading.picture.size_px:
+        raise PictureDiffers(
+            f"{picture.file_name} is not as large as the picture that was read, so the marks "
+            "would lie in the wrong places; nothing was written."
+        )
     report = report_of(reading)
     width_px, height_px = picture.size_px
     letter_px = _letter_px(width_px, height_px)
     placed = _placed(picture, report, letter_px)
     unlabelled = tuple(p.caliper.caliper_id for p in placed if p.label is None)
-    panel_width = min(max(width_px, 58 * letter_px), 130 * letter_px)
-    block = Panel(report, panel_width, letter_px, unlabelled).block()
+    panel_width = min(max(width_px, _LEAST_PANEL * letter_px), _MOST_PANEL * letter_px)
+    block = Panel(report, panel_width, letter_px, picture.sha256, unlabelled).block()
     size_px = (max(width_px, panel_width), height_px + math.ceil(block.height))
     image = Image.new("RGB", size_px, PAPER)
     for top in range(0, height_px, _ROWS_AT_ONCE):
@@ -80,6 +93,8 @@ def write_annotated(
 
     Raises
     ------
+    PictureDiffers
+        As `annotate`.
     TargetRefused
         If `path` is the picture itself, a reading, or not called a PNG.
     FileExistsRefused

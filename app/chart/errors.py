@@ -11,3 +11,7 @@ class FileExistsRefused(SmallsquareError):  # noqa: N818 - a refusal is an answe
 
 class TargetRefused(SmallsquareError):  # noqa: N818 - likewise
     """A place that is never written to: the picture itself, a reading, a foreign ending."""
+
+
+class PictureDiffers(SmallsquareError):  # noqa: N818 - likewise
+    """A picture on which the marks of a reading would lie in the wrong places."""

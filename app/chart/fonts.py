@@ -120,13 +120,14 @@ def _face(size_px: int, bold: bool) -> Face:
     paths = [Path(folder) / name for name in names for folder in folders]
     found = [font for path in paths if (font := _load(path, size_px)) is not None]
     carried = ImageFont.load_default(size=size_px)
-    # Without FreeType Pillow carries only a bitmap font, of one size and few letters.
-    if isinstance(carried, _Font):
-        found.append(carried)
-    return Face(tuple(found), size_px)
+    assert isinstance(carried, _Font)  # every wheel of Pillow brings FreeType
+    return Face((*found, carried), size_px)
 
 
 def _load(path: Path, size_px: int) -> _Font | None:
+    # Asked for a file that is not there, Pillow would search every folder of fonts.
+    if not path.is_file():
+        return None
     try:
         return ImageFont.truetype(str(path), size_px)
     except OSError:

@@ -28,8 +28,6 @@ _QUIET: Colour = (84, 99, 106)
 _TEAL: Colour = (11, 85, 99)
 _WARN_GROUND: Colour = (255, 239, 210)
 _WARN: Colour = (150, 52, 8)
-# From this many letter heights on, the panel has room for two columns.
-_TWO_COLUMNS_FROM = 75
 _CALIPER_COLUMN = 21
 
 
@@ -43,15 +41,23 @@ class Panel:
         Of the whole panel.
     letter_px : int
         Height of the letters.
+    shown_sha256 : str
+        Of the picture above.
     without_label : tuple of int
         Calipers whose label found no room on the picture.
     """
 
     def __init__(
-        self, report: Report, width_px: float, letter_px: int, without_label: tuple[int, ...] = ()
+        self,
+        report: Report,
+        width_px: float,
+        letter_px: int,
+        shown_sha256: str,
+        without_label: tuple[int, ...] = (),
     ) -> None:
         self._report = report
         self._width = width_px
+        self._shown_sha256 = shown_sha256
         self._without_label = without_label
         self._margin = round(1.4 * letter_px)
         self._gap = round(1.6 * letter_px)
@@ -98,7 +104,7 @@ class Panel:
         )
 
     def _banner(self, room: float) -> list[Block]:
-        said = unconfirmed_sentences(self._report.reading)
+        said = unconfirmed_sentences(self._report.reading, self._shown_sha256)
         if not said:
             return []
         inset = self._margin * 0.6
@@ -125,16 +131,16 @@ class Panel:
         report = self._report
         if not report.values:
             none = paragraph("No values: nothing was marked.", self._plain, room, _INK)
-            return self._titled("Values", stack([none, *self._unmatched(room)]))
+            return self._titled("Values", stack([none, *self._colleague(room)]))
         compared = any(report.comparison(v.key, v.lead) for v in report.values)
         heads = [Column("Value"), Column("Lead"), Column(""), Column("n"), Column("SD")]
         if compared:
-            heads += [Column(report.reading.colleague.strip() or "Colleague"), Column("Difference")]
+            heads += [Column("Colleague"), Column("Difference")]
         heads += [Column("Caution"), Column("Method", share=1.0)]
         rows = [self._row(value, compared) for value in report.values]
         look = Look(self._small, self._strong, self._plain, _QUIET, _INK)
         laid = table(heads, rows, room, look, strong_column=2)
-        return self._titled("Values", stack([laid, *self._unmatched(room)], self._gap / 2))
+        return self._titled("Values", stack([laid, *self._colleague(room)], self._gap / 2))
 
     def _row(self, value: Value, compared: bool) -> list[str]:
         spread = ""
@@ -158,18 +164,18 @@ class Panel:
         sign = "+" if comparison.difference > 0.0 else ""
         return [said, f"{sign}{number}, {'within' if comparison.within else 'outside'} ±"]
 
-    def _unmatched(self, room: float) -> list[Block]:
-        """A colleague's figures beside which there is no value of ours."""
+    def _colleague(self, room: float) -> list[Block]:
+        """Whose figures they are, and those beside which there is no value of ours."""
         reading = self._report.reading
+        if not reading.hand_figures:
+            return []
+        said = f"Colleague: {reading.colleague.strip() or 'not named'}."
         ours = {(value.key, value.lead) for value in self._report.values}
         left = [figure for figure in reading.hand_figures if (figure.key, figure.lead) not in ours]
-        if not left:
-            return []
-        listed = "; ".join(hand_figure_text(figure) for figure in left)
-        who = reading.colleague.strip() or "a colleague"
-        return [
-            paragraph(f"Figures of {who} without a value here: {listed}.", self._plain, room, _INK)
-        ]
+        if left:
+            listed = "; ".join(hand_figure_text(figure) for figure in left)
+            said += f" Figures without a value here: {listed}."
+        return [paragraph(said, self._plain, room, _INK)]
 
     def _basis(self, room: float) -> Block:
         """Calibration, grid, picture and versions."""
@@ -188,24 +194,16 @@ class Panel:
             f"SHA-256 {picture.sha256}",
             f"Software: {versions}",
         ]
-        width = self._column_width(room)
+        width = (room - self._gap) / 2.0
         return self._in_columns(
             [
                 self._titled("Calibration", self._lines(calibration, width)),
                 self._titled("Source picture", self._lines(source, width)),
-            ],
-            room,
+            ]
         )
 
-    def _column_width(self, room: float) -> float:
-        if room < _TWO_COLUMNS_FROM * self._plain.size_px:
-            return room
-        return (room - self._gap) / 2.0
-
-    def _in_columns(self, blocks: list[Block], room: float) -> Block:
-        """Blocks of `_column_width` in one column or two."""
-        count = 1 if self._column_width(room) == room else 2
-        return columns(blocks, count, self._gap, self._plain.size_px * 0.4)
+    def _in_columns(self, blocks: list[Block]) -> Block:
+        return columns(blocks, 2, self._gap, self._plain.size_px * 0.4)
 
     def _lines(self, lines: list[str], room: float) -> Block:
         return stack([paragraph(line, self._plain, room, _INK) for line in lines])
@@ -213,7 +211,7 @@ class Panel:
     def _cautions(self, room: float) -> list[Block]:
         if not self._notes:
             return []
-        width = self._column_width(room)
+        width = (room - self._gap) / 2.0
         number_width = self._plain.width_px("00  ")
         notes = []
         for number, caution in self._notes.values():
@@ -231,7 +229,7 @@ class Panel:
             notes.append(
                 beside([paragraph(str(number), self._strong, number_width, _WARN), words], 0.0)
             )
-        return [self._titled("Cautions", self._in_columns(notes, room))]
+        return [self._titled("Cautions", self._in_columns(notes))]
 
     def _calipers(self, room: float) -> list[Block]:
         reading = self._report.reading

@@ -44,13 +44,13 @@ def check_target(
     """
     if path.name.lower().endswith(SUFFIX) or _is_reading(path):
         raise TargetRefused(f"{path.name} is a reading file's name or place: choose another name.")
-    if not path.name.lower().endswith(ending):
-        raise TargetRefused(
-            f"This is written under a name that ends in {ending}: {path.name} does not."
-        )
     if (picture_path is not None and _same_file(path, picture_path)) or _has_hash(path, picture):
         raise TargetRefused(
             f"{path.name} is the picture itself, which is never written to: choose another name."
+        )
+    if not path.name.lower().endswith(ending):
+        raise TargetRefused(
+            f"This is written under a name that ends in {ending}: {path.name} does not."
         )
     # A link that leads nowhere is something that is there, too.
     if not overwrite and os.path.lexists(path):

@@ -12,6 +12,7 @@ from typing import Any
 
 from app.calculator import Caution, Comparison, Value
 from app.calculator.catalogue import CATALOGUE
+from app.chart.grid_report import grid_document
 from app.chart.report import Report, report_of
 from app.chart.targets import check_target
 from app.chart.wording import (
@@ -20,13 +21,11 @@ from app.chart.wording import (
     caliper_name,
     confirmed_by,
     grid_sentences,
-    largest_error_mm,
     rests_on,
     unconfirmed_sentences,
 )
 from app.reading import Reading, Setting
 from app.reading.file_format import write_whole
-from imaging.sheet_map import SheetMap
 
 KIND = "smallsquare values"
 SCHEMA_VERSION = 1
@@ -73,7 +72,7 @@ def values_as_json(reading: Reading) -> str:
 
 
 def values_as_csv(reading: Reading) -> str:
-    """One row for the reading, one for each value and each figure of a colleague.
+    """One row for the reading, for each value, each figure of a colleague and each caliper.
 
     Every row carries the picture, the reader and the calibration, so that no row, copied
     elsewhere, loses what it rests on. Text that a spreadsheet would take for a formula has an
@@ -86,6 +85,11 @@ def values_as_csv(reading: Reading) -> str:
     rows += [
         {"record": "colleague_figure", **_figure_columns(figure), **common}
         for figure in document["colleague_figures"]
+    ]
+    rows += [
+        {"record": "caliper", **_value_columns(value), "label": caliper["name"], **common}
+        for caliper in document["calipers"]
+        for value in caliper["values"]
     ]
     text = io.StringIO()
     writer = csv.DictWriter(text, [*_COLUMNS, *common], restval="")
@@ -135,23 +139,8 @@ def _calibration(reading: Reading) -> Json:
         "paper_speed": _setting(reading, calibration.paper_speed_mm_per_s, "mm/s"),
         "gain": _setting(reading, calibration.gain_mm_per_mv, "mm/mV"),
         "chest_gain": _setting(reading, calibration.chest_gain_mm_per_mv, "mm/mV"),
-        "grid": _grid(reading.sheet_map),
+        "grid": None if reading.sheet_map is None else grid_document(reading.sheet_map),
         "grid_statements": grid_sentences(reading.sheet_map),
-    }
-
-
-def _grid(sheet_map: SheetMap | None) -> Json | None:
-    if sheet_map is None:
-        return None
-    return {
-        "source": sheet_map.source,
-        "x_pitch_px_per_mm": sheet_map.x_pitch_px_per_mm,
-        "y_pitch_px_per_mm": sheet_map.y_pitch_px_per_mm,
-        "largest_standard_error_mm": largest_error_mm(sheet_map),
-        "scale_is_certain": sheet_map.scale_is_certain,
-        "turn_deg": sheet_map.turn_deg,
-        "mirrored": sheet_map.mirrored,
-        "evidence": list(sheet_map.evidence),
     }
 
 

@@ -107,9 +107,17 @@ def grid_sentences(sheet_map: SheetMap | None) -> list[str]:
     return [*sentences, *sheet_map.evidence]
 
 
-def unconfirmed_sentences(reading: Reading) -> list[str]:
-    """Everything a filed value rests on that nobody vouches for, a sentence each."""
+def unconfirmed_sentences(reading: Reading, shown_sha256: str | None = None) -> list[str]:
+    """Everything a filed value rests on that nobody vouches for, a sentence each.
+
+    `shown_sha256` is that of the picture the marks are shown on, where they are shown on one.
+    """
     said = []
+    if shown_sha256 is not None and shown_sha256 != reading.picture.sha256:
+        said.append(
+            "The picture shown is not the one that was read: its content has changed since "
+            f"(SHA-256 now {shown_sha256})."
+        )
     if reading.sheet_map is None:
         said.append("The scale is not known: no grid was found and none was given.")
     elif not reading.sheet_map.scale_is_certain:
