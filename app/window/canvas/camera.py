@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QObject, QPointF, QRectF, Signal
+from PySide6.QtCore import QObject, QPoint, QPointF, QRectF, Signal
 from PySide6.QtGui import QTransform
 from PySide6.QtWidgets import QGraphicsView
 
 LARGEST_ZOOM = 40.0
 _FIT_MARGIN_VIEW_PX = 12.0
 _KEPT_IN_SIGHT = 0.15
+_IN_SIGHT_VIEW_PX = 48
 
 
 class Camera(QObject):
@@ -81,6 +82,17 @@ class Camera(QObject):
             (self._view.verticalScrollBar(), dy),
         ):
             bar.setValue(bar.value() - round(step))
+
+    def keep_in_sight(self, place: QPoint) -> bool:
+        """Pan just so far that a viewport point comes off the edge; says whether it had to."""
+        room = self._view.viewport().rect()
+        edge = min(_IN_SIGHT_VIEW_PX, room.width() // 4, room.height() // 4)
+        kept = room.adjusted(edge, edge, -edge, -edge)
+        dx = min(max(place.x(), kept.left()), kept.right()) - place.x()
+        dy = min(max(place.y(), kept.top()), kept.bottom()) - place.y()
+        if dx or dy:
+            self.pan(dx, dy)
+        return bool(dx or dy)
 
     def scene_from_view(self, view_point: QPointF) -> QPointF:
         """The picture_px under a viewport point."""

@@ -2,34 +2,30 @@
 
 from __future__ import annotations
 
-import math
-
-import numpy as np
-from numpy.typing import NDArray
 from PySide6.QtCore import QRectF
 from PySide6.QtGui import QPainter, QPainterPath
 from PySide6.QtWidgets import QGraphicsItem, QStyleOptionGraphicsItem, QWidget
 
 from app.window.canvas import look
-from app.window.canvas.ink_map import Box
+from app.window.canvas.lattice_lines import lattice_lines
 from imaging.sheet_map import FloatArray, SheetMap
 
 THIN_FROM_VIEW_PX_PER_MM = 5.0
-_BLOCK_PX = 512
+BOLD_FROM_VIEW_PX_PER_MM = 0.8  # from further off they would only veil the picture
 
 
 class GridOverlay(QGraphicsItem):
-    """Bold lines every 5 mm and, close up, thin ones every mm, in blocks of the picture.
+    """Bold lines every 5 mm and, close up, thin ones every mm.
 
-    Only blocks that are to be painted anew are looked at, so that panning stays quick.
+    Each weight is laid out when it is first drawn, so that opening a picture does not wait
+    for a grid nobody asked to see.
     """
 
     def __init__(self) -> None:
         super().__init__()
-        self.setFlag(QGraphicsItem.GraphicsItemFlag.ItemUsesExtendedStyleOption)
         self._map: SheetMap | None = None
         self._bounds = QRectF()
-        self._blocks: dict[tuple[int, int], tuple[QPainterPath, QPainterPath]] = {}
+        self._paths: dict[bool, QPainterPath] = {}
 
     def set_map(self, sheet_map: SheetMap | None) -> None:
         """Draw another grid, or none."""
@@ -37,7 +33,7 @@ class GridOverlay(QGraphicsItem):
             return
         self.prepareGeometryChange()
         self._map = sheet_map
-        self._blocks.clear()
+        self._paths.clear()
         width_px, height_px = (0, 0) if sheet_map is None else sheet_map.picture_size_px
         self._bounds = QRectF(-0.5, -0.5, width_px, height_px)
         self.update()
@@ -52,80 +48,27 @@ class GridOverlay(QGraphicsItem):
         option: QStyleOptionGraphicsItem,
         widget: QWidget | None = None,  # noqa: ARG002  (Qt's signature)
     ) -> None:
-        """Draw the blocks that are exposed."""
+        """Draw the lines; the painter's own clip keeps to what is exposed."""
         if self._map is None:
             return
-        exposed = option.exposedRect
-        view_px_per_px = option.levelOfDetailFromTransform(painter.worldTransform())
-        thin = self._map.x_pitch_px_per_mm * view_px_per_px >= THIN_FROM_VIEW_PX_PER_MM
-        for row in _block_range(exposed.top(), exposed.bottom(), self._bounds.height()):
-            for column in _block_range(exposed.left(), exposed.right(), self._bounds.width()):
-                bold_path, thin_path = self._block(self._map, column, row)
-                if thin:
-                    painter.setPen(look.GRID_THIN_PEN)
-                    painter.drawPath(thin_path)
-                painter.setPen(look.GRID_BOLD_PEN)
-                painter.drawPath(bold_path)
+        zoom = option.levelOfDetailFromTransform(painter.worldTransform())
+        view_px_per_mm = self._map.x_pitch_px_per_mm * zoom
+        if view_px_per_mm >= THIN_FROM_VIEW_PX_PER_MM:
+            painter.setPen(look.GRID_THIN_PEN)
+            painter.drawPath(self._path(self._map, bold=False))
+        if view_px_per_mm >= BOLD_FROM_VIEW_PX_PER_MM:
+            painter.setPen(look.GRID_BOLD_PEN)
+            painter.drawPath(self._path(self._map, bold=True))
 
-    def _block(
-        self, sheet_map: SheetMap, column: int, row: int
-    ) -> tuple[QPainterPath, QPainterPath]:
-        if (column, row) not in self._blocks:
-            left, top = column * _BLOCK_PX - 0.5, row * _BLOCK_PX - 0.5
-            right = min(left + _BLOCK_PX, self._bounds.right())
-            bottom = min(top + _BLOCK_PX, self._bounds.bottom())
-            box = (left, top, right, bottom)
-            self._blocks[column, row] = lattice_paths(sheet_map, box)
-        return self._blocks[column, row]
+    def _path(self, sheet_map: SheetMap, *, bold: bool) -> QPainterPath:
+        if bold not in self._paths:
+            self._paths[bold] = _path_of(lattice_lines(sheet_map, bold=bold))
+        return self._paths[bold]
 
 
-def lattice_paths(sheet_map: SheetMap, box_px: Box) -> tuple[QPainterPath, QPainterPath]:
-    """Bold and thin lattice lines within an upright box of the picture, where covered."""
-    left, top, right, bottom = box_px
-    corners_px = np.array([[left, top], [right, top], [right, bottom], [left, bottom]])
-    corners_mm = sheet_map.to_mm(corners_px)
-    steps_px = np.array([sheet_map.x_step_px, sheet_map.y_step_px])
-    paths = QPainterPath(), QPainterPath()
-    for axis in (0, 1):
-        low, high = corners_mm[:, axis].min(), corners_mm[:, axis].max()
-        for line_mm in range(math.ceil(low), math.floor(high) + 1):
-            through_px = np.asarray(sheet_map.origin_px) + line_mm * steps_px[axis]
-            points_px = _clipped_line(through_px, steps_px[1 - axis], box_px, sheet_map)
-            path = paths[0 if line_mm % 5 == 0 else 1]
-            _add_runs(path, points_px, sheet_map.covers(points_px))
-    return paths
-
-
-def _clipped_line(
-    through_px: FloatArray, along_px: FloatArray, box_px: Box, sheet_map: SheetMap
-) -> FloatArray:
-    """Points on a line from edge to edge of a box, close enough to meet every coverage cell."""
-    enter, leave = -math.inf, math.inf
-    for axis in (0, 1):
-        if along_px[axis] == 0.0:
-            if not box_px[axis] <= through_px[axis] <= box_px[axis + 2]:
-                return np.empty((0, 2))
-            continue
-        edges = (np.array([box_px[axis], box_px[axis + 2]]) - through_px[axis]) / along_px[axis]
-        enter, leave = max(enter, edges.min()), min(leave, edges.max())
-    if enter >= leave:
-        return np.empty((0, 2))
-    length_px = (leave - enter) * math.hypot(*along_px)
-    count = 2 + math.ceil(2.0 * length_px / sheet_map.coverage.cell_px)
-    points_px = through_px + np.linspace(enter, leave, count)[:, np.newaxis] * along_px
-    # Just inside: the edge itself belongs to the next cell, which may not exist.
-    return np.clip(points_px, np.array(box_px[:2]) + 1e-6, np.array(box_px[2:]) - 1e-6)
-
-
-def _add_runs(path: QPainterPath, points_px: FloatArray, seen: NDArray[np.bool_]) -> None:
-    """A straight piece for each run of points that were seen."""
-    edges = np.flatnonzero(np.diff(np.concatenate(([False], seen, [False])).astype(np.int8)))
-    for first, after in zip(edges[::2], edges[1::2], strict=True):
-        path.moveTo(*points_px[first])
-        path.lineTo(*points_px[after - 1])
-
-
-def _block_range(low: float, high: float, size: float) -> range:
-    last = max(0, math.ceil(size / _BLOCK_PX) - 1)
-    first_block = min(max(int(low // _BLOCK_PX), 0), last)
-    return range(first_block, min(max(int(high // _BLOCK_PX), 0), last) + 1)
+def _path_of(pieces_px: FloatArray) -> QPainterPath:
+    path = QPainterPath()
+    for x1, y1, x2, y2 in pieces_px.tolist():
+        path.moveTo(x1, y1)
+        path.lineTo(x2, y2)
+    return path

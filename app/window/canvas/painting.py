@@ -5,15 +5,15 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from PySide6.QtCore import QLineF, QRectF
-from PySide6.QtGui import QBrush, QColor, QPainter, QPen
+from PySide6.QtGui import QBrush, QColor, QPainter, QPen, QRegion
 
 from app.window.canvas import look
 from app.window.canvas.overlay import Drawn
 
 
-def paint_calipers(painter: QPainter, drawn: Iterable[Drawn], exposed: QRectF) -> None:
-    """Draw those that touch the exposed part; labels last, above every line."""
-    shown = [item for item in drawn if item.bounds.intersects(exposed)]
+def paint_calipers(painter: QPainter, drawn: Iterable[Drawn], exposed: QRegion) -> None:
+    """Draw those that touch what is exposed; labels last, above every line."""
+    shown = [item for item in drawn if exposed.intersects(item.bounds.toAlignedRect())]
     if not shown:
         return
     painter.setRenderHint(QPainter.RenderHint.Antialiasing)

@@ -11,6 +11,8 @@ from PySide6.QtGui import (
     QKeyEvent,
     QMouseEvent,
     QPainter,
+    QPaintEvent,
+    QRegion,
     QResizeEvent,
     QTransform,
     QWheelEvent,
@@ -35,10 +37,9 @@ from app.window.canvas.mouse import Mouse
 from app.window.canvas.overlay import Overlay
 from app.window.canvas.painting import paint_box, paint_calipers, paint_lines
 from app.window.canvas.picture_item import PictureItem
+from app.window.canvas.placing import Placing
 from app.window.canvas.selection import Selection
 from app.window.document import Document
-
-_IN_SIGHT_VIEW_PX = 48
 
 
 class SheetView(QGraphicsView):
@@ -79,9 +80,8 @@ class SheetView(QGraphicsView):
         super().__init__(parent)
         self._document = document
         self._selection = Selection()
-        self._placing: TwoPlaces | None = None
-        self._prompt = ""
         self._box: QRectF | None = None
+        self._exposed = QRegion()
         self._set_up_view()
         self._picture_item = PictureItem()
         self._grid = GridOverlay()
@@ -92,6 +92,7 @@ class SheetView(QGraphicsView):
         self._aim_mark = AimMark(self)
         self._mouse = Mouse(self)
         self._keys = Keys(self)
+        self._placing = Placing(self)
         self._camera = Camera(self)
         self._camera.moved.connect(self._camera_moved)
         document.opened.connect(self._picture_opened)
@@ -103,13 +104,15 @@ class SheetView(QGraphicsView):
     def _set_up_view(self) -> None:
         self.setScene(QGraphicsScene(self))
         self.setFrameShape(QFrame.Shape.NoFrame)
-        self.setBackgroundBrush(look.DESK)
         self.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
         self.setTransformationAnchor(QGraphicsView.ViewportAnchor.NoAnchor)
         self.setResizeAnchor(QGraphicsView.ViewportAnchor.NoAnchor)
         self.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
         self.viewport().setMouseTracking(True)
+        # `drawBackground` leaves nothing bare: filling it all before would be done in vain.
+        self.viewport().setAutoFillBackground(False)
+        self.viewport().setAttribute(Qt.WidgetAttribute.WA_OpaquePaintEvent)
         self.setAccessibleName("Sheet")
         self.setAccessibleDescription(
             "The picture with its calipers. Tab goes through calipers and legs, "
@@ -242,13 +245,7 @@ class SheetView(QGraphicsView):
 
     def keep_in_sight(self, point: PicturePoint) -> None:
         """Pan just so far that a place is in view."""
-        place, room = self.view_px_from_picture_px(point), self.viewport().rect()
-        edge = min(_IN_SIGHT_VIEW_PX, room.width() // 4, room.height() // 4)
-        kept = room.adjusted(edge, edge, -edge, -edge)
-        dx = min(max(place.x(), kept.left()), kept.right()) - place.x()
-        dy = min(max(place.y(), kept.top()), kept.bottom()) - place.y()
-        if dx or dy:
-            self.pan(dx, dy)
+        if self._camera.keep_in_sight(self.view_px_from_picture_px(point)):
             self._lay_out_aim()
 
     # Placing
@@ -260,29 +257,19 @@ class SheetView(QGraphicsView):
         self.cancel_gesture()
         known = None if quantity is None else quantity_of(quantity)
         placing_class = PlaceChain if known is not None and known.chained else PlaceCaliper
-        self._begin(placing_class(self, self._first_aim(), kind, quantity, lead))
+        self._placing.begin(placing_class(self, self._first_aim(), kind, quantity, lead))
 
     def begin_scale_box(self) -> None:
         """Ask for a box over a known number of large squares."""
         if self._document.reading is None:
             return
         self.cancel_gesture()
-        self._begin(DrawScaleBox(self, self._first_aim()))
+        self._placing.begin(DrawScaleBox(self, self._first_aim()))
 
     def cancel_gesture(self) -> None:
         """Leave a drag or a placing as if it had not begun; placed calipers stay."""
         self._mouse.cancel_drag()
-        if self._placing is not None:
-            self._placing.cancel()
-            self.after_placing_step()
-
-    def _begin(self, placing: TwoPlaces) -> None:
-        self._keys.settle()
-        self.set_selection(Selection())
-        self._placing = placing
-        self.setFocus(Qt.FocusReason.OtherFocusReason)
-        self._mouse.show_cursor()
-        self.after_placing_step()
+        self._placing.cancel()
 
     def _first_aim(self) -> PicturePoint:
         """Under the pointer, or in the middle of the view."""
@@ -294,46 +281,29 @@ class SheetView(QGraphicsView):
 
     def after_placing_step(self) -> None:
         """Tell what is asked for now, or that it is over."""
-        placing = self._placing
-        if placing is None:
-            return
-        if not placing.is_over:
-            self._set_prompt(placing.prompt)
-            return
-        self._placing = None
-        self._mouse.show_cursor()
-        self._set_prompt("")
-        if isinstance(placing, DrawScaleBox) and placing.corners is not None:
-            self.scale_box_drawn.emit(*placing.corners)
-        elif isinstance(placing, PlaceCaliper) and placing.placed_ids:
-            placing.select_placed()
-            self.placing_finished.emit(placing.placed_ids[-1])
-        else:
-            self.placing_cancelled.emit()
+        self._placing.after_step()
 
-    def _set_prompt(self, prompt: str) -> None:
-        if prompt != self._prompt:
-            self._prompt = prompt
-            self.prompt_changed.emit(prompt)
+    def show_cursor(self) -> None:
+        """The cursor that fits what a press would do."""
+        self._mouse.show_cursor()
 
     # Keys
 
     @property
     def placing(self) -> TwoPlaces | None:
         """What two places are being asked for, if anything."""
-        return self._placing
+        return self._placing.current
 
     def is_placing(self) -> bool:
         """Whether two places are being asked for."""
-        return self._placing is not None
+        return self._placing.current is not None
 
     def step_back(self) -> bool:
         """Esc: restore a drag, step back in placing, or let go of the selection."""
         if self._mouse.is_dragging():
             self._mouse.cancel_drag()
-        elif self._placing is not None:
+        elif self.is_placing():
             self._placing.step_back()
-            self.after_placing_step()
         elif self._selection.ids:
             self.set_selection(Selection())
         else:
@@ -410,7 +380,8 @@ class SheetView(QGraphicsView):
 
     def _picture_opened(self) -> None:
         picture = self._document.picture
-        self.cancel_gesture()
+        self._mouse.cancel_drag()
+        self._placing.drop()
         self.set_selection(Selection())
         self._picture_item.set_picture(picture)
         self._overlay.set_ink(None if picture is None else InkMap(picture.pixels))
@@ -427,9 +398,7 @@ class SheetView(QGraphicsView):
             self.fit_sheet()
         kept = self._selection.kept_in(reading)
         self._overlay.set_reading(reading, kept)
-        if self._placing is not None and not self._placing.is_over:
-            self._placing.reading_changed()
-            self.after_placing_step()
+        self._placing.reading_changed()
         self._repaint(None)
         if kept != self._selection:
             self._selection = kept
@@ -485,11 +454,22 @@ class SheetView(QGraphicsView):
         else:
             self.viewport().update(canvas_box.translated(self._canvas_offset()).toAlignedRect())
 
-    def drawForeground(self, painter: QPainter, rect: QRectF | QRect) -> None:
+    def drawBackground(self, painter: QPainter, rect: QRectF | QRect) -> None:
+        """The desk, where the picture does not cover it."""
+        exposed = QRectF(rect)
+        if not self._picture_item.sceneBoundingRect().contains(exposed):
+            painter.fillRect(exposed, look.DESK)
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """Note which pieces are to be painted: `drawForeground` is told of one box around all."""
+        self._exposed = event.region()
+        super().paintEvent(event)
+
+    def drawForeground(self, painter: QPainter, rect: QRectF | QRect) -> None:  # noqa: ARG002
         """The calipers, in canvas px; only what is exposed."""
         self._overlay.suit_screen(self.devicePixelRatioF())
-        exposed = self.transform().mapRect(QRectF(rect)).adjusted(-1.0, -1.0, 1.0, 1.0)
         offset = self._canvas_offset()
+        exposed = self._exposed.translated(-offset.toPoint())
         painter.save()
         painter.setWorldTransform(QTransform.fromTranslate(offset.x(), offset.y()))
         paint_calipers(painter, self._overlay.settled, exposed)

@@ -19,6 +19,7 @@ from tests.app.window.canvas.hands import (
     MIDDLE,
     RIGHT,
     SHIFT,
+    blank_picture,
     caliper_of,
     click,
     drag,
@@ -26,6 +27,7 @@ from tests.app.window.canvas.hands import (
     key,
     place,
     press,
+    reading_of,
     release,
 )
 
@@ -426,3 +428,21 @@ class TestScaleBox:
         release(view, place(view, 400.0, 400.0))
         with qtbot.waitSignal(view.placing_cancelled):
             key(view, Qt.Key.Key_Escape)
+
+
+def test_another_picture_ends_a_chain_without_telling_of_calipers_it_does_not_have(
+    view: SheetView, document: Document, qtbot: QtBot
+) -> None:
+    view.begin_placing(CaliperKind.TIME, "rr", "II")
+    for x in (200.0, 300.0, 405.0):
+        click(view, place(view, x, 500.0))
+    other = blank_picture((400, 300))
+    with (
+        qtbot.assertNotEmitted(view.placing_finished),
+        qtbot.waitSignal(view.placing_cancelled),
+    ):
+        document.open(other, reading_of(other))
+    assert not view.is_placing()
+    click(view, place(view, 100.0, 100.0))
+    assert document.reading is not None
+    assert document.reading.calipers == ()

@@ -1,0 +1,236 @@
+"""Panning a marked page at 1:1, beside a bare view of the same pixmap.
+
+Run it for the figures: ``python -m tests.bench.bench_canvas``. Both views are in one process
+on a real X server (Xvfb is started where there is no DISPLAY) and take turns, so that a busy
+machine slows both down. A frame is over when its paint event has been handled.
+"""
+
+from __future__ import annotations
+
+import json
+import os
+import shutil
+import statistics
+import subprocess
+import sys
+import time
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import asdict, dataclass, replace
+from pathlib import Path
+
+import numpy as np
+from PySide6.QtCore import QEvent, QObject, Qt
+from PySide6.QtGui import QImage, QPixmap
+from PySide6.QtWidgets import QApplication, QFrame, QGraphicsScene, QGraphicsView
+
+from app.reading import Caliper, CaliperKind, PicturePoint, Reading, new_reading
+from app.window.canvas import SheetView
+from app.window.document import Document
+from imaging.picture import Picture
+from tests.app.reading_examples import example_map
+
+REPOSITORY = Path(__file__).resolve().parent.parent.parent
+PAGE_PX = (4000, 3000)  # 12 megapixels
+PX_PER_MM = 12
+VIEW_PX = (1366, 768)
+FRAMES = 300
+REPEATS = 5
+_STEP_PX = (7, 2)
+_SCREEN = "1920x1080x24"
+
+
+@dataclass(frozen=True, slots=True)
+class Panning:
+    """Median frames per second.
+
+    Attributes
+    ----------
+    bare_per_s, canvas_per_s : float
+        As Qt paints a drag: what stays on the screen is moved, the strip that appears painted.
+    bare_whole_per_s, canvas_whole_per_s : float
+        With every frame painted whole.
+    """
+
+    bare_per_s: float
+    canvas_per_s: float
+    bare_whole_per_s: float
+    canvas_whole_per_s: float
+
+    @property
+    def ratio(self) -> float:
+        """The canvas's frame rate over the bare view's."""
+        return self.canvas_per_s / self.bare_per_s
+
+    @property
+    def whole_ratio(self) -> float:
+        """The same with every frame painted whole."""
+        return self.canvas_whole_per_s / self.bare_whole_per_s
+
+
+def x_server_is_there() -> bool:
+    """Whether there is a display, or Xvfb to make one."""
+    return "DISPLAY" in os.environ or shutil.which("Xvfb") is not None
+
+
+def measure_panning() -> Panning:
+    """Pan both views, in a process of their own on a real X server."""
+    with _x_server() as environment:
+        finished = subprocess.run(
+            [sys.executable, "-m", "tests.bench.bench_canvas", "--here"],
+            cwd=REPOSITORY,
+            env=environment,
+            stdout=subprocess.PIPE,
+            text=True,
+            timeout=600.0,
+            check=True,
+        )
+    return Panning(**json.loads(finished.stdout.splitlines()[-1]))
+
+
+@contextmanager
+def _x_server() -> Iterator[dict[str, str]]:
+    """The environment of a program on a display: the present one, or one of Xvfb's."""
+    environment = {**os.environ, "QT_QPA_PLATFORM": "xcb"}
+    if "DISPLAY" in environment:
+        yield environment
+        return
+    reading_end, writing_end = os.pipe()
+    server = subprocess.Popen(
+        ["Xvfb", "-displayfd", str(writing_end), "-screen", "0", _SCREEN, "-nolisten", "tcp"],
+        pass_fds=[writing_end],
+        stderr=subprocess.DEVNULL,
+    )
+    os.close(writing_end)
+    try:
+        with os.fdopen(reading_end) as numbers:
+            display = numbers.readline().strip()
+        if not display:
+            raise RuntimeError("Xvfb found no display to open here")
+        yield environment | {"DISPLAY": f":{display}"}
+    finally:
+        server.terminate()
+        server.wait(10.0)
+
+
+class _Paints(QObject):
+    """Counts the paint events of what it watches."""
+
+    count = 0
+
+    def eventFilter(self, watched: QObject, event: QEvent) -> bool:  # noqa: ARG002
+        self.count += event.type() == QEvent.Type.Paint
+        return False
+
+
+def _pan_here() -> Panning:
+    """Both views in this process, `REPEATS` times in turn after one turn that fills caches."""
+    application = QApplication(sys.argv[:1])
+    if application.platformName() != "xcb":
+        raise RuntimeError("this measures on a real X server")
+    document = _marked_document()
+    sheet = SheetView(document)
+    sheet.resize(*VIEW_PX)
+    sheet.zoom_actual()
+    sheet.select([1])
+    bare = _bare_view(document.picture.pixels)
+    runs = [(view, whole) for whole in (False, True) for view in (bare, sheet)]
+    rates: list[list[float]] = [[] for _ in runs]
+    for repeat in range(REPEATS + 1):
+        for (view, whole), found in zip(runs, rates, strict=True):
+            rate = _frames_per_s(application, view, whole=whole)
+            if repeat > 0:
+                found.append(rate)
+    return Panning(*(statistics.median(found) for found in rates))
+
+
+def _frames_per_s(application: QApplication, view: QGraphicsView, *, whole: bool) -> float:
+    """Pan from the page's corner, every frame painted before the next one is asked for."""
+    view.show()
+    view.raise_()
+    across, down = view.horizontalScrollBar(), view.verticalScrollBar()
+    across.setValue(0)
+    down.setValue(0)
+    _settle(application)
+    paints = _Paints()
+    view.viewport().installEventFilter(paints)
+    begun = time.perf_counter()
+    for _ in range(FRAMES):
+        before = paints.count
+        across.setValue(across.value() + _STEP_PX[0])
+        down.setValue(down.value() + _STEP_PX[1])
+        if whole:
+            view.viewport().update()
+        while paints.count == before:
+            application.processEvents()
+    taken_s = time.perf_counter() - begun
+    moved_px = (across.value(), down.value())
+    view.hide()
+    _settle(application)
+    if paints.count < FRAMES or moved_px != tuple(FRAMES * step for step in _STEP_PX):
+        raise RuntimeError(f"{paints.count} paints, panned by {moved_px}")
+    return FRAMES / taken_s
+
+
+def _settle(application: QApplication) -> None:
+    """Let the window system have its say."""
+    ends = time.monotonic() + 0.3
+    while time.monotonic() < ends:
+        application.processEvents()
+
+
+def _bare_view(pixels: np.ndarray) -> QGraphicsView:
+    height, width = pixels.shape[:2]
+    image = QImage(pixels.data, width, height, pixels.strides[0], QImage.Format.Format_RGB888)
+    view = QGraphicsView()
+    view.setScene(QGraphicsScene(view))
+    view.scene().addPixmap(QPixmap.fromImage(image))
+    # No scroll bars to paint: the peer is as quick as it can be.
+    view.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+    view.setVerticalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+    view.setFrameShape(QFrame.Shape.NoFrame)
+    view.resize(*VIEW_PX)
+    return view
+
+
+def _marked_document() -> Document:
+    """A ruled page with a wavy pen line and 24 calipers where the panning comes by."""
+    pixels = np.full((PAGE_PX[1], PAGE_PX[0], 3), (255, 248, 246), dtype=np.uint8)
+    pixels[::PX_PER_MM] = pixels[:, ::PX_PER_MM] = (245, 190, 190)
+    columns = np.arange(PAGE_PX[0])
+    for baseline in range(300, PAGE_PX[1], 400):
+        rows = (baseline + 60.0 * np.sin(columns / 40.0)).astype(int)
+        for thickness in range(4):
+            pixels[rows + thickness, columns] = 20
+    picture = Picture(pixels, "page.png", None, "00" * 32)
+    reading = new_reading(picture, now="2026-01-02T03:04:05+00:00", software_version="bench")
+    reading = replace(reading, sheet_map=example_map(PAGE_PX, float(PX_PER_MM)))
+    document = Document()
+    document.open(picture, _with_calipers(reading))
+    return document
+
+
+def _with_calipers(reading: Reading) -> Reading:
+    for number in range(24):
+        x, y = 250.0 + 400.0 * (number % 8), 300.0 + 400.0 * (number // 8)
+        kind = (CaliperKind.TIME, CaliperKind.TIME, CaliperKind.HEIGHT, CaliperKind.COMB)[
+            number % 4
+        ]
+        end = PicturePoint(x + (20.0 if kind is CaliperKind.HEIGHT else 240.0), y - 90.0)
+        teeth = 5 if kind is CaliperKind.COMB else 2
+        caliper = Caliper(number + 1, kind, PicturePoint(x, y), end, lead="II", teeth=teeth)
+        reading = reading.with_caliper(caliper)
+    return reading
+
+
+if __name__ == "__main__":
+    if "--here" in sys.argv:
+        print(json.dumps(asdict(_pan_here())))
+    else:
+        measured = measure_panning()
+        print(
+            f"panning: bare view {measured.bare_per_s:.0f} frames/s, canvas "
+            f"{measured.canvas_per_s:.0f}, ratio {measured.ratio:.2f}\n"
+            f"whole frames: bare view {measured.bare_whole_per_s:.0f} frames/s, canvas "
+            f"{measured.canvas_whole_per_s:.0f}, ratio {measured.whole_ratio:.2f}"
+        )
