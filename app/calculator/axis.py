@@ -18,6 +18,8 @@ LEADS = ("I", "aVF")
 # Augmented leads are smaller than the limb leads by √3/2: Novosel 1999 (found).
 AUGMENTED = 2.0 / math.sqrt(3.0)
 SMALL_VECTOR_MM = 5.0
+# Less than any mark can show; an angle of it would be made of rounding.
+_NO_VECTOR_MV = 1e-9
 _METHOD = "atan2(2/√3 aVF, I) from net QRS heights in I and aVF"
 
 
@@ -104,7 +106,7 @@ def _what_is_missing(nets: Mapping[str, NetHeight]) -> str:
 
 def _is_indeterminate(lead_i: Estimate, lead_avf: Estimate) -> bool:
     """Whether a vector of no size lies within two sigma of both leads together."""
-    if lead_i.value == 0.0 and lead_avf.value == 0.0:
+    if vector_size(lead_i.value, lead_avf.value) < _NO_VECTOR_MV:
         return True
     size = _size(lead_i, lead_avf)
     # An error at right angles to the vector that is as long as the vector itself is 1 rad.

@@ -13,8 +13,12 @@ from app.reading.calibration import Evidence
 from app.reading.model import Reading
 from imaging.sheet_map import SheetMap
 
+# 150 dots an inch (computed).
 COARSE_PX_PER_MM = 5.9
+# A printed ruling is within ±2 %: EC11, IEC 60601-2-51, from memory.
 UNEQUAL_PERCENT = 2.0
+# Nearer to a limit than this, a number lies on it: no side can be told in two decimals.
+_NOISE = 0.005
 _EVIDENCE = {
     Evidence.DEFAULT: "is only the usual setting",
     Evidence.PULSE: "comes from the calibration pulse",
@@ -69,6 +73,8 @@ def rounding(estimate: Estimate, *limits: float) -> list[Caution]:
     shown = float(text.replace("−", "-"))
     found = []
     for limit in limits:
+        if abs(estimate.value - limit) < _NOISE:
+            continue
         is_below = estimate.value < limit
         if (is_below and shown >= limit) or estimate.value > limit >= shown:
             side = "below" if is_below else "above"

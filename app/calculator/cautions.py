@@ -169,7 +169,7 @@ TABLE: dict[str, CautionEntry] = {
         "Novosel 1999 (found)",
     ),
     "rounding": CautionEntry(
-        "Shown rounded; worked out it is {value:.1f}, {side} {limit}.",
+        "Shown rounded; worked out it is {value:.2f}, {side} {limit}.",
         "Limits are compared before rounding.",
         "JCGM 100:2008, 7.2.6 (from memory)",
     ),

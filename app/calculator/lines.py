@@ -59,10 +59,6 @@ class Line:
         """Name and lead in a sentence."""
         return place(self.key, self.lead)
 
-    def refused(self, sentence: str) -> Line:
-        """The same line without a mean."""
-        return Line(self.key, self.lead, (), None, self.caliper_ids, self.covered, sentence)
-
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Marked:

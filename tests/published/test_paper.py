@@ -64,5 +64,6 @@ def test_the_calibration_pulse() -> None:
     (width,) = measure_caliper(reading, pulse)
     upright = between(None, (8.0, 40.0), (13.0, 30.0), kind=CaliperKind.HEIGHT)
     (tall,) = measure_caliper(reading, upright)
-    assert (width.value, width.unit) == (pytest.approx(200.0), "ms")
-    assert (tall.value, tall.unit) == (pytest.approx(1.0), "mV")
+    assert number(width) == pytest.approx(200.0)
+    assert number(tall) == pytest.approx(1.0)
+    assert (width.unit, tall.unit) == ("ms", "mV")
