@@ -82,12 +82,12 @@ TABLE: dict[str, CautionEntry] = {
     "no_lead": CautionEntry(
         "No lead was named.",
         "Leads differ (QT by 50 to 65 ms), and the gain may differ in chest leads.",
-        "Garson 1993; Braunwald 2019 (found)",
+        "Garson 1993 (found); Braunwald 2019 (found, secondary source)",
     ),
     "single_beat": CautionEntry(
         "From one {unit} only.",
         "Beats differ, and so does each placing: the mean of several is steadier.",
-        "AHA/ACCF/HRS 2009 (from memory)",
+        NO_SOURCE,
     ),
     "single_lead_interval": CautionEntry(
         "Measured in one lead: an interval over all leads is longer.",
