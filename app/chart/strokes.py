@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 
 import numpy as np
+from numpy.typing import NDArray
 from PIL import Image
 
 from app.chart.fonts import Colour
@@ -48,7 +49,11 @@ def draw_stroke(
     dy = np.arange(top, bottom, dtype=np.float32)[:, np.newaxis] - np.float32((y1 + y2) / 2.0)
     across = np.abs(dx * along_y - dy * along_x)
     along = np.abs(dx * along_x + dy * along_y)
-    cover = np.clip(width_px / 2.0 + 0.5 - across, 0.0, min(1.0, width_px))
-    cover *= np.clip(length / 2.0 + 0.5 - along, 0.0, 1.0)
+    cover = _overlap(across, width_px / 2.0) * _overlap(along, length / 2.0)
     mask = Image.fromarray(np.round(cover * (255.0 * opacity)).astype(np.uint8))
     image.paste(colour, (left, top, right, bottom), mask)
+
+
+def _overlap(distance: NDArray[np.float32], half: float) -> NDArray[np.float32]:
+    """The share of a pixel at a distance from a line's middle that lies within its half width."""
+    return np.maximum(np.minimum(distance + 0.5, half) - np.maximum(distance - 0.5, -half), 0.0)
