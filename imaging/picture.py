@@ -9,6 +9,7 @@ from __future__ import annotations
 import hashlib
 import logging
 import stat
+import warnings
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -138,7 +139,7 @@ def _read_whole_file(path: Path) -> bytes:
             "may not be read by this user account; copy it to a folder of yours and open the copy."
         ) from error
     except (OSError, ValueError) as error:
-        _log.warning("reading %r failed", path, exc_info=True)
+        _log.info("reading %r failed", path, exc_info=True)
         raise Refused(
             "could not be read; check the disk or network drive and try again."
         ) from error
@@ -154,19 +155,23 @@ def _decode_checked(
     if not data:
         raise Refused("is empty (0 bytes); copy the file again or scan the page again.")
     try:
-        decoded = _decode(data, page, max_pixels)
+        with warnings.catch_warnings():
+            # They are printed on the terminal and say nothing a reader could act on.
+            warnings.filterwarnings("ignore", module=r"(PIL|pillow_heif)\b")
+            decoded = _decode(data, page, max_pixels)
         height_px, width_px = decoded.pixels.shape[:2]
         check_size(width_px, height_px, max_pixels)
     except Refused:
         raise
     except MemoryError as error:
-        _log.warning("no memory to decode %r", name, exc_info=True)
+        _log.info("no memory to decode %r", name, exc_info=True)
         raise Refused(
             "needs more memory than is free; close other programs or scan at 300 dots per inch."
         ) from error
     except Exception as error:
         # The decoders raise dozens of kinds on damaged files; none may reach the reader.
-        _log.warning("decoding %r failed", name, exc_info=True)
+        # Below warning level, or logging that nobody set up would print the traceback.
+        _log.info("decoding %r failed", name, exc_info=True)
         raise Refused(
             "is damaged, cut short or of a rare kind; copy it again, or save it as an ordinary PNG."
         ) from error

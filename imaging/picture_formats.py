@@ -176,6 +176,13 @@ def _decode_tiff(data: bytes, page: int, max_pixels: int) -> Decoded:
             "holds signed, 32-bit or floating-point values, not a picture; "
             "save it again with 8 bits per channel."
         )
+    is_uncompressed, is_planar = image.tag_v2.get(259, 1) == 1, image.tag_v2.get(284) == 2
+    if max(bits) == 16 and len(bits) > 1 and is_uncompressed and is_planar:
+        # Pillow takes the two bytes of a sample for two pixels (seen in 13.0).
+        raise Refused(
+            "keeps its 16-bit colours in separate planes, which cannot be read; "
+            "save it again with 8 bits per channel."
+        )
     notes = (HIGH_BYTE,) if max(bits) == 16 else ()
     white_is_zero = image.tag_v2.get(262) == 0 and max(bits) == 16
     return _finish(image, notes, page_count, white_is_zero=white_is_zero)

@@ -113,14 +113,18 @@ def decode_jpeg(data: bytes, page: int, max_pixels: int) -> Decoded:
     check_page(page, 1)
     layout = jpeg_layout(data)
     check_size(layout.width_px, layout.height_px, max_pixels)
-    if layout.components not in (1, 3) or (layout.components == 1 and layout.has_profile):
+    is_left_to_pillow = layout.components not in (1, 3) or (
+        layout.components == 1 and layout.has_profile
+    )
+    if is_left_to_pillow:
         from imaging.picture_formats import decode_jpeg_with_pillow
 
         decoded = decode_jpeg_with_pillow(data)
         pixels, notes = decoded.pixels, decoded.notes
     else:
         pixels, notes = _decode_rgb(data), ()
-    if layout.is_progressive or _may_be_painted_grey(pixels):
+    # In several passes, or other colours, a block without data has no colour to know it by.
+    if layout.is_progressive or is_left_to_pillow or _may_be_painted_grey(pixels):
         _refuse_missing_data(data, layout)
     if layout.components == 3 and layout.has_profile:
         from imaging.picture_colour import convert_rgb_in_place
