@@ -21,11 +21,14 @@ class _Worker(QThread):
         work: Callable[[], Any],
         done: Callable[[Any], None],
         failed: Callable[[Exception], None],
+        *,
+        must_end: bool,
     ) -> None:
         super().__init__()
         self._work = work
         self.done = done
         self.failed = failed
+        self.must_end = must_end
         self.result: Any = None
         self.error: Exception | None = None
 
@@ -41,15 +44,16 @@ class Jobs(QObject):
     """At most one running job that anybody waits for.
 
     A job that was given up runs on to its end, since nothing may stop a thread half-way,
-    but what it brings is dropped.
+    but what it brings is dropped. A job that must end (it writes a file) is reported whatever
+    has begun since.
 
     Signals
     -------
-    busy_changed(str)
-        What is being done now, in words; empty when nothing is.
+    busy_changed(str, bool)
+        What is being done now, in words, and whether it may be given up; empty when nothing is.
     """
 
-    busy_changed = Signal(str)
+    busy_changed = Signal(str, bool)
 
     def __init__(self, parent: QObject | None = None) -> None:
         super().__init__(parent)
@@ -68,6 +72,7 @@ class Jobs(QObject):
         failed: Callable[[Exception], None],
         *,
         delay_ms: int = 0,
+        must_end: bool = False,
     ) -> None:
         """Run `work` on a thread, then `done` or `failed` on this one.
 
@@ -75,25 +80,29 @@ class Jobs(QObject):
         be painted first: Python threads take turns.
         """
         self.give_up()
-        worker = _Worker(work, done, failed)
+        worker = _Worker(work, done, failed, must_end=must_end)
         # A bound method of a QObject, so that Qt calls it on this object's own thread.
         worker.finished.connect(self._sweep)
         self._threads.add(worker)
         self._awaited = worker
-        self.busy_changed.emit(title)
-        QTimer.singleShot(delay_ms, lambda: self._set_off(worker))
+        self.busy_changed.emit(title, not must_end)
+        if delay_ms:
+            QTimer.singleShot(delay_ms, lambda: self._set_off(worker))
+        else:
+            worker.start()
 
     def give_up(self) -> None:
         """Wait no longer for the present job."""
         if self._awaited is not None:
             self._awaited = None
-            self.busy_changed.emit("")
+            self.busy_changed.emit("", False)
 
     def wait_for_all(self) -> None:
         """Give up and wait until every thread has ended: none may outlive the program."""
         self.give_up()
         for worker in list(self._threads):
             worker.wait()
+        self._sweep()
 
     def _set_off(self, worker: _Worker) -> None:
         if worker is self._awaited:
@@ -108,11 +117,11 @@ class Jobs(QObject):
             self._end(worker)
 
     def _end(self, worker: _Worker) -> None:
-        if worker is not self._awaited:
+        if worker is self._awaited:
+            self.give_up()
+        elif not worker.must_end:
             _log.info("a job that was given up has ended")
             return
-        self._awaited = None
-        self.busy_changed.emit("")
         if worker.error is not None:
             worker.failed(worker.error)
         else:

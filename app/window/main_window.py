@@ -45,6 +45,7 @@ class MainWindow(QMainWindow):
         super().__init__()
         self._memory_log = memory_log
         self._is_telling = False
+        self._is_closing = False
         self.ask = ask or Ask(self)
         self.document = Document(self)
         self.jobs = Jobs(self)
@@ -136,6 +137,7 @@ class MainWindow(QMainWindow):
             self.document.abandon()
         # A search that goes on is waited for out of sight.
         self.hide()
+        self._is_closing = True
         self.jobs.wait_for_all()
         event.accept()
 
@@ -255,12 +257,15 @@ class MainWindow(QMainWindow):
             self.notices.take_away("notes")
         self.statusBar().clearMessage()
 
-    def _busy(self, title: str) -> None:
-        self.prompt.set_busy(title)
+    def _busy(self, title: str, can_be_given_up: bool) -> None:
+        self.prompt.set_busy(title, can_be_given_up=can_be_given_up)
         self._follow_actions()
 
     def _refused(self, sentence: str) -> None:
         _log.info("refused: %s", sentence)
+        if self._is_closing:
+            # Something the window still had to write was not written, and no notice is seen.
+            self.ask.tell("Smallsquare", sentence)
         self.notices.put("trouble", "stop", sentence, closable=True)
 
     def _saved(self, sentence: str) -> None:

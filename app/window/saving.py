@@ -5,9 +5,10 @@ Nothing is replaced unasked, and the picture itself is never written to.
 
 from __future__ import annotations
 
+import os
 from collections.abc import Callable
+from dataclasses import dataclass
 from enum import Enum, auto
-from functools import partial
 from pathlib import Path
 
 from PySide6.QtCore import QObject, Signal
@@ -38,6 +39,14 @@ class Leaving(Enum):
     CLEAN = auto()
     DISCARD = auto()
     STAY = auto()
+
+
+@dataclass(frozen=True, slots=True)
+class Place:
+    """Where to write, and whether the reader said that what is there may be replaced."""
+
+    path: Path
+    may_replace: bool
 
 
 class Saving(QObject):
@@ -115,49 +124,51 @@ class Saving(QObject):
         self._commit_pending()
         if self._document.reading is None or not self._settle_pasted():
             return False
-        path = self._place("Save the reading", SUFFIX)
-        return path is not None and self._write_reading(path)
+        place = self._place("Save the reading", SUFFIX)
+        return place is not None and self._write_reading(place.path)
 
     def save_annotated(self) -> None:
         """Write the annotated picture under a name that is asked for."""
         self._commit_pending()
         picture, reading = self._document.picture, self._document.reading
-        path = self._place("Save the annotated picture", ANNOTATED_SUFFIX)
-        if picture is None or reading is None or path is None:
+        place = self._place("Save the annotated picture", ANNOTATED_SUFFIX)
+        if picture is None or reading is None or place is None:
             return
 
         def write() -> Path:
             from app.chart import write_annotated
 
-            write_annotated(picture, reading, path, overwrite=True)
-            return path
+            write_annotated(picture, reading, place.path, overwrite=place.may_replace)
+            return place.path
 
-        self._jobs.start("Writing the annotated picture", write, self._written, self._not_written)
+        self._jobs.start(
+            "Writing the annotated picture", write, self._written, self._not_written, must_end=True
+        )
 
     def save_values_json(self) -> None:
         """Write the values as JSON."""
         from app.chart import write_values_json
 
-        self._save_values(VALUES_JSON_SUFFIX, partial(write_values_json, overwrite=True))
+        self._save_values(VALUES_JSON_SUFFIX, write_values_json)
 
     def save_values_csv(self) -> None:
         """Write the values as CSV."""
         from app.chart import write_values_csv
 
-        self._save_values(VALUES_CSV_SUFFIX, partial(write_values_csv, overwrite=True))
+        self._save_values(VALUES_CSV_SUFFIX, write_values_csv)
 
     def _save_values(self, suffix: str, write: Callable[..., object]) -> None:
         self._commit_pending()
         reading = self._document.reading
-        path = self._place("Save the values", suffix)
-        if reading is None or path is None:
+        place = self._place("Save the values", suffix)
+        if reading is None or place is None:
             return
         try:
-            write(reading, path)
+            write(reading, place.path, overwrite=place.may_replace)
         except SmallsquareError as error:
             self.failed.emit(str(error))
             return
-        self._written(path)
+        self._written(place.path)
 
     def _write_reading(self, path: Path) -> bool:
         try:
@@ -176,18 +187,18 @@ class Saving(QObject):
             return True
         if self._pasted_png is None:
             return True
-        path = self._place("First save the pasted picture", ".png")
-        if path is None:
+        place = self._place("First save the pasted picture", ".png")
+        if place is None:
             return False
         try:
-            write_whole(path, self._pasted_png)
+            write_whole(place.path, self._pasted_png)
         except SmallsquareError as error:
             self.failed.emit(str(error))
             return False
-        self._document.picture_kept_at(path)
+        self._document.picture_kept_at(place.path)
         return True
 
-    def _place(self, title: str, suffix: str) -> Path | None:
+    def _place(self, title: str, suffix: str) -> Place | None:
         """Ask for a place to write to until it is free, may be replaced, or nothing is wanted."""
         suggestion = self._suggestion(suffix)
         while True:
@@ -202,15 +213,18 @@ class Saving(QObject):
                     "different name.",
                 )
                 continue
-            if not path.exists() or path == self._document.path:
-                return path
+            # A link that leads nowhere is something that is there, too.
+            if not os.path.lexists(path):
+                return Place(path, may_replace=False)
+            if path == self._document.path:
+                return Place(path, may_replace=True)
             answer = self._ask.choose(
                 title,
                 f"{path.name} is there already.",
                 ["Choose another name", "Replace it", "Cancel"],
             )
             if answer == 1:
-                return path
+                return Place(path, may_replace=True)
             if answer == 2:
                 return None
 

@@ -52,8 +52,8 @@ def unconfirmed_statement(calibration: Calibration) -> str:
     listed = listed[0].upper() + listed[1:]
     are = "is" if len(names) == 1 else "are"
     return (
-        f"{listed} {are} not confirmed: values marked ? rest on that. Check the strip's "
-        "legend or calibration pulse, then confirm above."
+        f"{listed} {are} not confirmed: values marked ? rest on that. Check the legend or "
+        "calibration pulse on the sheet, then confirm above."
     )
 
 

@@ -14,7 +14,8 @@ from PySide6.QtWidgets import (
     QWidget,
 )
 
-from app.window.panels.worksheet_rows import Row
+from app.calculator.display import shown_number
+from app.window.panels.worksheet_rows import Row, shown_unit
 
 
 class FoldLine(QWidget):
@@ -110,7 +111,8 @@ def _below_title(row: Row | None) -> list[QWidget]:
     if value.spread is not None:
         widgets.append(
             _quiet(
-                f"Spread over {value.n} beats (standard deviation): {value.spread:.3g} {value.unit}"
+                f"Spread (standard deviation, n = {value.n}): "
+                f"{shown_number(value.spread, value.spread)} {shown_unit(value.unit)}"
             )
         )
     widgets.append(_quiet(f"Method: {value.method}"))

@@ -85,7 +85,7 @@ class Prompt(QFrame):
             layout.addWidget(widget)
         # Of one height whatever it says: the canvas must not move under a hand that aims.
         self.setFixedHeight(42)
-        self.set_busy("")
+        self.set_busy("", can_be_given_up=False)
 
     def set_idle(self, words: str) -> None:
         """What to say while no gesture is going on."""
@@ -97,11 +97,12 @@ class Prompt(QFrame):
         self._gesture = words
         self._show()
 
-    def set_busy(self, title: str) -> None:
+    def set_busy(self, title: str, *, can_be_given_up: bool) -> None:
         """Show what is being worked on; an empty title hides bar and button."""
         self.busy.setText(title)
-        for widget in (self.busy, self.bar, self.cancel):
+        for widget in (self.busy, self.bar):
             widget.setVisible(bool(title))
+        self.cancel.setVisible(can_be_given_up)
 
     def _show(self) -> None:
         self.text.set_words(self._gesture or self._idle)

@@ -63,7 +63,10 @@ _HEADERS = {
     Column.NAME: ("Line", "What is measured"),
     Column.LEAD: ("Lead", "Click to choose another lead"),
     Column.COUNT: ("n", "Beats or intervals the value rests on"),
-    Column.VALUE: ("Value ±", "± is two standard errors; ? marks settings nobody has confirmed"),
+    Column.VALUE: (
+        "Value ±",
+        "± is two standard errors; ? where speed, gain or scale is not confirmed",
+    ),
     Column.HAND: ("Colleague", "Click to type a colleague's figure; empty it to remove it"),
     Column.DIFFERENCE: ("Difference", "Mine less the colleague's, and whether that is within ±"),
 }
@@ -72,9 +75,9 @@ _LONGEST = {
     Column.NAME: ("QTc Framingham", 24),
     Column.LEAD: ("aVF", 22),
     Column.COUNT: ("12", 8),
-    Column.VALUE: ("1000 ± 99 ms ?", 24),
+    Column.VALUE: ("−0.999 ± 0.019 mV ?", 24),
     Column.HAND: ("Colleague", 8),
-    Column.DIFFERENCE: ("−999 outside", 8),
+    Column.DIFFERENCE: ("−0.99 outside", 8),
 }
 
 

@@ -6,7 +6,15 @@ import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from app.calculator import Comparison, Value, compare_all, format_value, measure_caliper, work_out
+from app.calculator import (
+    Caution,
+    Comparison,
+    Value,
+    compare_all,
+    format_value,
+    measure_caliper,
+    work_out,
+)
 from app.reading.marks import Caliper, CaliperKind
 from app.reading.model import HandFigure, Reading
 from app.window.panels.lines import MARKED_VALUE_KEYS, Line
@@ -80,15 +88,15 @@ class Row:
 
     @property
     def is_unconfirmed(self) -> bool:
-        """Whether the value rests on a setting nobody has confirmed."""
+        """Whether the value rests on something nobody has confirmed."""
         return self.given is not None and unconfirmed(self.given)
 
     @property
     def other_cautions(self) -> int:
-        """Cautions beside the one about settings."""
+        """Cautions beside those that the question mark stands for."""
         if self.given is None:
             return 0
-        return sum(not c.code.endswith("_unconfirmed") for c in self.given.cautions)
+        return sum(not _is_doubt(caution) for caution in self.given.cautions)
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,12 +115,16 @@ class _Worked:
 
 
 def unconfirmed(value: Value) -> bool:
-    """Whether a value carries a caution about a setting nobody has confirmed."""
-    return any(caution.code.endswith("_unconfirmed") for caution in value.cautions)
+    """Whether a value rests on a setting nobody has confirmed, or on an uncertain scale."""
+    return any(_is_doubt(caution) for caution in value.cautions)
+
+
+def _is_doubt(caution: Caution) -> bool:
+    return caution.code.endswith("_unconfirmed") or caution.code == "scale_uncertain"
 
 
 def value_text(value: Value | None) -> str:
-    """A value as the worksheet shows it, marked while its settings are not confirmed."""
+    """A value as the worksheet shows it, marked while what it rests on is not confirmed."""
     if value is None:
         return NO_VALUE
     if value.value is None:
@@ -135,7 +147,12 @@ def worksheet_rows(reading: Reading, lines: Sequence[Line]) -> tuple[Row, ...]:
         _group("QRS heights, for the axis", [_line_row(line, worked) for line in heights]),
         _group("Worked out from the marks", _derived_rows(worked, lines)),
     ]
-    free = [_free_row(item, reading) for item in reading.calipers if item.quantity is None]
+    free = [
+        row
+        for item in reading.calipers
+        if item.quantity is None
+        for row in _free_rows(item, reading)
+    ]
     if free:
         groups.append(_group("Free calipers", free))
     return tuple(groups)
@@ -239,8 +256,7 @@ def _value_row(
 
 
 def _beat_row(caliper: Caliper, reading: Reading) -> Row:
-    values = measure_caliper(reading, caliper)
-    value = values[0] if values else None
+    value = measure_caliper(reading, caliper)[0]
     return Row(
         ("beat", caliper.caliper_id, None),
         f"beat {caliper.beat}" if caliper.beat is not None else "beat",
@@ -257,16 +273,20 @@ _FREE_NAMES = {
 }
 
 
-def _free_row(caliper: Caliper, reading: Reading) -> Row:
-    values = measure_caliper(reading, caliper)
-    return Row(
-        ("free", caliper.caliper_id, None),
-        f"{_FREE_NAMES[caliper.kind]} {caliper.caliper_id}",
-        lead=caliper.lead or "",
-        value=", ".join(value_text(value) for value in values) or NO_VALUE,
-        given=values[0] if values else None,
-        caliper_ids=(caliper.caliper_id,),
-    )
+def _free_rows(caliper: Caliper, reading: Reading) -> list[Row]:
+    """One row for each value: a comb gives its interval and its rate."""
+    name = f"{_FREE_NAMES[caliper.kind]} {caliper.caliper_id}"
+    return [
+        Row(
+            ("free", caliper.caliper_id, None if place == 0 else value.key),
+            name if place == 0 else f"{name}, as rate",
+            lead=caliper.lead or "",
+            value=value_text(value),
+            given=value,
+            caliper_ids=(caliper.caliper_id,),
+        )
+        for place, value in enumerate(measure_caliper(reading, caliper))
+    ]
 
 
 def hand_text(figure: HandFigure | None, unit: str) -> str:

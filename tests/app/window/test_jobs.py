@@ -19,7 +19,7 @@ def test_work_is_done_elsewhere_and_handed_over_here(qtbot: QtBot) -> None:
     jobs = Jobs()
     threads: list[threading.Thread] = []
     titles: list[str] = []
-    jobs.busy_changed.connect(titles.append)
+    jobs.busy_changed.connect(lambda title, _: titles.append(title))
     done: list[threading.Thread] = []
     jobs.start(
         "Working",
@@ -58,6 +58,21 @@ def test_what_a_job_given_up_brings_is_dropped(qtbot: QtBot) -> None:
     jobs.wait_for_all()
     qtbot.wait(1)
     assert done == ["quick"]
+
+
+def test_a_job_that_must_end_is_reported_whatever_has_begun_since(qtbot: QtBot) -> None:
+    jobs = Jobs()
+    go_on = threading.Event()
+    may_be_given_up: list[bool] = []
+    jobs.busy_changed.connect(lambda title, may: may_be_given_up.append(may) if title else None)
+    done: list[str] = []
+    jobs.start("Writing", lambda: "written" * go_on.wait(20.0), done.append, never, must_end=True)
+    jobs.start("Quick", lambda: "quick", done.append, never)
+    assert may_be_given_up == [False, True]
+    qtbot.waitUntil(lambda: done == ["quick"])
+    go_on.set()
+    jobs.wait_for_all()
+    assert done == ["quick", "written"]
 
 
 def test_waiting_for_all_leaves_no_thread(qtbot: QtBot) -> None:

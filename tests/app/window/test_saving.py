@@ -5,13 +5,14 @@ from __future__ import annotations
 import csv
 import json
 from pathlib import Path
+from typing import Any
 
 import pytest
 from PIL import Image
 from pytestqt.qtbot import QtBot
 
 from app.reading import load_reading
-from app.reading.file_format import SUFFIX
+from app.reading.file_format import SUFFIX, ReadingFileError
 from app.window.main_window import MainWindow
 from app.window.saving import beside, with_suffix
 from tests.app.window.bench import ScriptedAsk, measure, reading_of
@@ -107,6 +108,51 @@ def test_the_annotated_picture_is_written_beside(
     with Image.open(path) as image:
         assert image.width >= 960
         assert image.height >= 640
+
+
+def test_a_file_that_came_meanwhile_is_left_and_that_is_said(
+    qtbot: QtBot,
+    marked: MainWindow,
+    ask: ScriptedAsk,
+    tmp_path: Path,
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    """Between the question and the writing somebody else may write there."""
+    path = tmp_path / "filed.png"
+    ask.files.append(path)
+    start = marked.jobs.start
+
+    def somebody_is_quicker(*arguments: Any, **options: Any) -> None:
+        path.write_bytes(b"precious")
+        start(*arguments, **options)
+
+    monkeypatch.setattr(marked.jobs, "start", somebody_is_quicker)
+    with qtbot.waitSignal(marked.saving.failed, timeout=20000):
+        marked.saving.save_annotated()
+    assert path.read_bytes() == b"precious"
+    notice = marked.notices.notice("trouble")
+    assert notice is not None
+    assert "is there already" in notice.label.text()
+
+
+def test_what_cannot_be_written_while_closing_is_said(
+    qtbot: QtBot,
+    marked: MainWindow,
+    ask: ScriptedAsk,
+    tmp_path: Path,
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:
+    def full(*_arguments: Any, **_options: Any) -> None:
+        raise ReadingFileError("a.png could not be written: the disk is full.")
+
+    monkeypatch.setattr("app.chart.write_annotated", full)
+    ask.files.append(tmp_path / "a.png")
+    marked.saving.save_annotated()
+    # Nobody may stop a file half-way, so nothing offers to.
+    assert not marked.prompt.cancel.isVisible()
+    ask.answers.append("Discard")
+    assert marked.close()
+    assert ask.told == ["a.png could not be written: the disk is full."]
 
 
 def test_values_are_written_as_json_and_csv(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QFontMetrics
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication, QComboBox, QLineEdit
 from pytestqt.qtbot import QtBot
@@ -11,7 +12,15 @@ from pytestqt.qtbot import QtBot
 from app.reading import HandFigure
 from app.window.main_window import MainWindow
 from app.window.panels.row_tree import Column
-from tests.app.window.bench import cell, click_cell, line_of, measure, reading_of
+from tests.app.window.bench import (
+    cell,
+    click_cell,
+    click_picture,
+    line_of,
+    measure,
+    pick_line,
+    reading_of,
+)
 
 
 def type_figure(window: MainWindow, key: str, lead: str, text: str) -> None:
@@ -138,9 +147,21 @@ def test_nothing_of_the_worksheet_is_cut_off(opened: MainWindow, width_px: int) 
     measure(opened, "rr", "II", 100.0, 260.0)
     QTest.keyClick(opened.view, Qt.Key.Key_Return)
     type_figure(opened, "rr", "II", "1000")
+    pick_line(opened, "s_height", "aVF")
+    click_picture(opened, 300.0, 300.0)
+    click_picture(opened, 310.0, 420.0)
+    type_figure(opened, "s_height", "aVF", "-0.25")
     assert opened.width() == width_px
     tree = opened.worksheet.tree
-    for column in (Column.LEAD, Column.COUNT, Column.HAND, Column.DIFFERENCE):
-        words_px = tree.fontMetrics().horizontalAdvance(cell(opened, "rr", "II", column))
-        assert words_px < tree.columnWidth(column), column
+    beside_px = {Column.VALUE: tree.iconSize().width()}
+    seen = 0
+    for item in tree.findItems("*", Qt.MatchFlag.MatchWildcard | Qt.MatchFlag.MatchRecursive):
+        for column in Column:
+            if item.isFirstColumnSpanned():
+                continue
+            words_px = QFontMetrics(item.font(column)).horizontalAdvance(item.text(column))
+            room_px = tree.columnWidth(column) - beside_px.get(column, 0)
+            assert words_px < room_px, (column, item.text(column))
+            seen += "±" in item.text(column)
+    assert seen >= 4
     assert sum(tree.columnWidth(column) for column in Column) <= tree.viewport().width()

@@ -6,7 +6,16 @@ from dataclasses import replace
 
 import pytest
 
-from app.reading import Caliper, CaliperKind, HandFigure, PicturePoint, Reading
+from app.reading import (
+    Calibration,
+    Caliper,
+    CaliperKind,
+    Evidence,
+    HandFigure,
+    PicturePoint,
+    Reading,
+    Setting,
+)
 from app.window.panels.lines import Lines
 from app.window.panels.worksheet_rows import (
     Row,
@@ -107,3 +116,26 @@ def test_figures_typed_before_there_is_a_value_are_compared_when_it_comes() -> N
     for name in ("Rate II", "QTc Bazett II", "QTc Hodges II"):
         assert rows[name].given is not None, name
         assert rows[name].within is not None, name
+
+
+def test_a_free_comb_has_a_row_for_its_interval_and_one_for_its_rate() -> None:
+    # Six gaps over 480 px: 80 px, 10 squares of 8 px, 400 ms at 25 mm/s.
+    ends = PicturePoint(100.0, 200.0), PicturePoint(580.0, 200.0)
+    comb = Caliper(3, CaliperKind.COMB, *ends, teeth=7)
+    rows = rows_of(replace(example_reading(), calipers=(comb,)))
+    assert rows["Comb 3"].value.startswith("400.0 ± ")
+    assert rows["Comb 3, as rate"].value.startswith("150.0 ± ")
+    assert rows["Comb 3, as rate"].caliper_ids == (3,)
+
+
+def test_an_uncertain_scale_is_marked_as_an_unconfirmed_setting_is() -> None:
+    reading = example_reading()
+    confirmed = Setting(25.0, Evidence.READER, confirmed=True)
+    gain = Setting(10.0, Evidence.READER, confirmed=True)
+    reading = replace(reading, calibration=Calibration(confirmed, gain))
+    assert reading.sheet_map is not None
+    assert not rows_of(reading)["QRS II"].value.endswith("?")
+    uncertain = replace(reading.sheet_map, scale_is_certain=False)
+    qrs = rows_of(replace(reading, sheet_map=uncertain))["QRS II"]
+    assert qrs.value.endswith("?")
+    assert qrs.children[0].value.endswith("?")
