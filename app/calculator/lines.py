@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from app.calculator.spans import NO_SCALE, Span, measure_spans
-from app.calculator.uncertainty import Estimate, mean_of, repeated, sample_sd
+from app.calculator.uncertainty import Estimate, mean_of, plain_mean, repeated, sample_sd
 from app.reading.marks import CaliperKind
 from app.reading.model import Reading
 from app.reading.quantities import LEADS, Quantity, quantity
@@ -121,7 +121,10 @@ def _line(line_key: LineKey, spans: Sequence[Span]) -> Line:
     if refusal:
         return Line(key, lead, (), None, ids, covered, refusal)
     beats = _beats(spans)
-    return Line(key, lead, beats, mean_of(beats), ids, covered)
+    # Chained intervals make up one stretch, whose mean is what it is however they differ.
+    known = quantity(key)
+    mean = plain_mean(beats) if known is not None and known.chained else mean_of(beats)
+    return Line(key, lead, beats, mean, ids, covered)
 
 
 def _beats(spans: Sequence[Span]) -> tuple[Estimate, ...]:

@@ -8,7 +8,9 @@ The model (law of propagation with correlations, JCGM 100:2008, 5.2.2, from memo
   the printed grid's scatter. Two spans that use the very same leg share its error, so in
   the mean of a chain of RR intervals only the two outer legs remain;
 * a span placed three times or more has the reader's own repeatability in the place of the
-  pen's share.
+  pen's share;
+* the mean of three beats or more is no surer than their spread says, except for RR: there
+  the beats differ by the rhythm itself, which has its own value and cautions.
 
 It does not contain two readers' different idea of where a wave ends, nor a recorder whose
 speed or gain is off.
@@ -110,12 +112,6 @@ class Estimate:
         legs = self.shared[_SCALES:]
         return float(legs @ legs) + self.own_variance
 
-    @property
-    def legs_left(self) -> int:
-        """Legs that still act on the value; those inside a chain have cancelled."""
-        legs = np.abs(self.shared[_SCALES:])
-        return int(np.count_nonzero(legs > 1e-9 * legs.max(initial=0.0)))
-
 
 def combine(value: float, *parts: tuple[float, Estimate]) -> Estimate:
     """A number worked out from others: (slope, part) for each, to first order."""
@@ -136,7 +132,7 @@ def repeated(spans: Sequence[Estimate], leg: LegError) -> Estimate:
     share; the picture's resolution stays, so that copies of one caliper cannot claim none.
     """
     count = len(spans)
-    mean = _plain_mean(spans)
+    mean = plain_mean(spans)
     if count < REPEATS_NEEDED:
         return mean
     shared = mean.shared.copy()
@@ -146,22 +142,22 @@ def repeated(spans: Sequence[Estimate], leg: LegError) -> Estimate:
 
 
 def mean_of(beats: Sequence[Estimate]) -> Estimate:
-    """Mean over beats (at least one).
+    """Mean over beats that are taken as repeats of one thing (at least one).
 
     From three beats on, the placing part is not taken below the beats' standard deviation
-    over √n, except in one unbroken chain: there the mean is that of the stretch between the
-    two outer legs, whatever the single beats do.
+    over √n.
     """
-    mean = _plain_mean(beats)
+    mean = plain_mean(beats)
     count = len(beats)
-    if count < REPEATS_NEEDED or mean.legs_left <= 2:
+    if count < REPEATS_NEEDED:
         return mean
     by_spread = float(np.var([beat.value for beat in beats], ddof=1)) / count
     missing = max(0.0, by_spread - mean.placement_variance)
     return Estimate(mean.value, mean.shared, mean.own_variance + missing)
 
 
-def _plain_mean(parts: Sequence[Estimate]) -> Estimate:
+def plain_mean(parts: Sequence[Estimate]) -> Estimate:
+    """Mean of numbers that may well differ (at least one): only the marks' and map's errors."""
     share = 1.0 / len(parts)
     value = math.fsum(part.value for part in parts) * share
     return combine(value, *((share, part) for part in parts))

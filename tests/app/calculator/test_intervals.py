@@ -31,6 +31,14 @@ def test_an_interval_of_two_beats(key: str, width_mm: float) -> None:
     assert codes(value) == {"single_lead_interval"} | ({"qt_method"} if key == "qt" else set())
 
 
+def test_an_interval_of_three_beats_is_no_surer_than_they_agree() -> None:
+    widths_mm = (9.0, 10.0, 11.0)
+    beats = [time("qt", w, beat=n, at_mm=(20.0 * n, 20.0)) for n, w in enumerate(widths_mm, 1)]
+    value = worked(reading_of(*beats), "qt")
+    assert value.spread == pytest.approx(40.0)
+    assert value.plus_minus == pytest.approx(2.0 * 40.0 / 3.0**0.5)
+
+
 @pytest.mark.parametrize(("key", "width_mm"), INTERVALS)
 def test_one_beat_says_so(key: str, width_mm: float) -> None:
     value = worked(reading_of(time(key, width_mm)), key)

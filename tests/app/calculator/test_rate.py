@@ -47,6 +47,21 @@ def test_a_chain_s_rate_has_the_error_of_its_two_outer_legs() -> None:
     assert mean.plus_minus == pytest.approx(2.0 * math.sqrt(2.0) * leg_ms / 5.0)
 
 
+@pytest.mark.parametrize("gap_mm", [0.0, 0.0625])
+def test_an_irregular_rhythm_s_mean_is_as_sure_as_its_marks(gap_mm: float) -> None:
+    """Whether or not each interval begins on the very place where the last one ended."""
+    widths_mm, calipers, start_mm = [14.0, 30.0, 19.0, 25.0], [], 4.0
+    for beat, width_mm in enumerate(widths_mm, start=1):
+        calipers.append(time("rr", width_mm, beat=beat, at_mm=(start_mm, 30.0)))
+        start_mm += width_mm + gap_mm
+    legs = 2 if gap_mm == 0.0 else 8
+    leg_ms = 40.0 * leg_error(exact_map(), Axis.ALONG).sigma_mm
+    mean = worked(reading_of(*calipers), "rr_mean")
+    assert mean.plus_minus == pytest.approx(2.0 * math.sqrt(legs) * leg_ms / 4.0)
+    assert mean.spread is not None
+    assert mean.spread > 10.0 * mean.plus_minus
+
+
 def test_every_lead_has_its_own_rate() -> None:
     reading = reading_of(*rr_chain([20.0]), *rr_chain([25.0], lead="V1", y_mm=60.0))
     values = work_out(reading)
