@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from itertools import chain
+
 from app.calculator import Value
 from app.calculator.display import shown_number, with_unit
 from app.chart.blocks import Area, Block, beside, columns, paragraph, stack
@@ -15,9 +17,11 @@ from app.chart.wording import (
     caliper_name,
     grid_sentences,
     hand_figure_text,
+    is_unconfirmed,
     moment,
     setting_sentence,
     settings_of,
+    spoken,
     unconfirmed_sentences,
     value_text,
 )
@@ -109,7 +113,8 @@ class Panel:
             return []
         inset = self._margin * 0.6
         head = "NOT CONFIRMED"
-        if self._report.values:
+        measured = chain(self._report.values, *self._report.by_caliper)
+        if any(is_unconfirmed(value) for value in measured):
             head += f": values marked {UNCONFIRMED_MARK} rest on that"
         words = stack(
             [
@@ -240,8 +245,7 @@ class Panel:
         width = (room - self._gap * (count - 1)) / count
         listed = []
         for caliper, values in zip(reading.calipers, self._report.by_caliper, strict=True):
-            said = ", ".join(value.refusal or value_text(value) for value in values)
-            text = f"{caliper.caliper_id}  {caliper_name(caliper)}: {said or 'no value'}"
+            text = f"{caliper.caliper_id}  {caliper_name(caliper)}: {spoken(values)}"
             listed.append(paragraph(text, self._small, width, _INK))
         content = [columns(listed, count, self._gap)]
         if self._without_label:

@@ -27,7 +27,8 @@ _LABEL_ON_LINE_COST = 6.0
 _LINE_UNDER_LABEL_COST = 10.0
 _PER_MM_COST = 0.3
 _OTHER_SIDE_COST = 1.5
-_SHORTER_TEXT_COSTS = (0.0, 1.0, 4.0, 8.0)
+_SHORTER_TEXT_COST = 1.5
+_ONLY_NUMBER_COST = 8.0
 _SHIFT_COST = 6.0
 _STACK_COST = 3.0
 _BAR_ROOM_MM = 1.2
@@ -69,7 +70,7 @@ def place_calipers(
     ----------
     calipers : sequence of Caliper
     texts : mapping
-        For each caliper id its label's words, the fullest first, then shorter ones.
+        For each caliper id its label's words, the fullest first, the bare number last.
     frame : Frame
     ink : Ink
         Of the picture.
@@ -163,7 +164,7 @@ class _Room:
         """Where a label may stand inside the picture, the best first, and at what cost."""
         options = sorted(
             (
-                _SHORTER_TEXT_COSTS[level] + abs(shift) * _SHIFT_COST + stack * _STACK_COST,
+                _text_cost(level, len(plates)) + abs(shift) * _SHIFT_COST + stack * _STACK_COST,
                 level,
                 shift,
                 stack,
@@ -217,6 +218,12 @@ class _Room:
         cost += _LABEL_ON_MARK_COST * _count(box, self._marks)
         own = [box_of(line) for line in (*lines.legs, lines.bar)]
         return cost + _LABEL_ON_LINE_COST * _count(box, [*self._lines, *own])
+
+
+def _text_cost(level: int, count: int) -> float:
+    if level == count - 1 and count > 1:
+        return _ONLY_NUMBER_COST
+    return level * _SHORTER_TEXT_COST
 
 
 def _count(box: Box, others: Sequence[Box]) -> int:

@@ -56,4 +56,5 @@ def draw_stroke(
 
 def _overlap(distance: NDArray[np.float32], half: float) -> NDArray[np.float32]:
     """The share of a pixel at a distance from a line's middle that lies within its half width."""
-    return np.maximum(np.minimum(distance + 0.5, half) - np.maximum(distance - 0.5, -half), 0.0)
+    shared = np.minimum(distance + 0.5, half) - np.maximum(distance - 0.5, -half)
+    return np.asarray(np.maximum(shared, 0.0))

@@ -14,6 +14,7 @@ from app.chart.wording import (
     moment,
     setting_sentence,
     settings_of,
+    spoken,
     unconfirmed_sentences,
     value_text,
 )
@@ -44,7 +45,7 @@ def values_as_text(reading: Reading) -> str:
         )
     lines += _aligned(rows) if report.values else ["No values: nothing was marked."]
     free = [
-        f"{caliper_name(caliper)}: " + ", ".join(v.refusal or value_text(v) for v in values)
+        f"{caliper_name(caliper)}: {spoken(values)}"
         for caliper, values in zip(reading.calipers, report.by_caliper, strict=True)
         if caliper.quantity is None
     ]

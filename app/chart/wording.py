@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 import numpy as np
 
@@ -149,6 +150,12 @@ def value_text(value: Value) -> str:
         return "no value"
     text = format_value(value)
     return f"{text} {UNCONFIRMED_MARK}" if is_unconfirmed(value) else text
+
+
+def spoken(values: Sequence[Value]) -> str:
+    """What a caliper measures, or why it measures nothing, in one line."""
+    said = dict.fromkeys(value.refusal or value_text(value) for value in values)
+    return ", ".join(said)
 
 
 def short_value_text(value: Value) -> str:

@@ -111,6 +111,10 @@ def test_a_figure_beside_a_refused_value_has_no_difference() -> None:
     assert "outside ±" not in text
     assert "no value" in text
     assert "Give the scale first" in text
+    assert "values marked ?" not in text
+    # Once for the comb, which would give two values.
+    comb = text[text.index("Comb 12") : text.index("± is two")]
+    assert comb.count("Give the scale first") == 1
 
 
 def test_each_caliper_is_listed_by_its_number() -> None:

@@ -112,3 +112,8 @@ def test_the_order_decides_and_the_same_comes_out_again() -> None:
     assert placed(beats(4)) == placed(beats(4))
     assert reading_of().sheet_map is not None
     assert place_calipers((), {}, FRAME, Ink(PAPER), SIZE_PX, lambda _: (1.0, 1.0)) == []
+
+
+def test_a_name_is_kept_before_the_bare_number() -> None:
+    found = placed(beats(2), texts=("no value here", "#1"))
+    assert {item.label.text for item in found if item.label is not None} == {"no value here"}
