@@ -12,7 +12,7 @@ class Caution:
     Attributes
     ----------
     code : str
-        Stable name, for tests and other programs ("calibration_unconfirmed").
+        Stable name, for tests and other programs ("speed_unconfirmed").
     text : str
         One line for the reader.
     reason : str
@@ -42,7 +42,8 @@ class Value:
     unit : str
         UCUM: ms, /min, mV, deg, %.
     plus_minus : float or None
-        Two sigma of the value, from the map's and the marks' standard errors.
+        Two sigma of the value, from the map's and the marks' standard errors; for the mean
+        of three beats or more (not of RR) no less than two of their spread over √n.
     method, source : str
         How it was worked out, and the publication with its status.
     n : int
