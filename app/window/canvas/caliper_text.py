@@ -2,7 +2,14 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
+from app.calculator import Value, format_value, measure_caliper
+from app.calculator.display import shown_number, with_unit
 from app.reading import Caliper, CaliperKind, Reading, quantity
+
+NO_GRID = "no grid yet"
+_UNCONFIRMED_MARK = "?"
 
 _FREE_NAMES = {
     CaliperKind.TIME: "Time",
@@ -35,13 +42,42 @@ def caliper_name(caliper: Caliper) -> str:
     return name
 
 
-def caliper_value(reading: Reading, caliper: Caliper) -> str:
-    """The measured span in words, or why there is none."""
-    sheet_map = reading.sheet_map
-    if sheet_map is None:
-        return "no grid yet"
-    if caliper.kind is CaliperKind.HEIGHT:
-        return f"{caliper.height_mm(sheet_map):.1f} mm"
-    if caliper.kind is CaliperKind.COMB:
-        return f"{caliper.tooth_pitch_mm(sheet_map):.1f} mm"
-    return f"{caliper.width_mm(sheet_map):.1f} mm"
+@dataclass(frozen=True, slots=True)
+class ValueText:
+    """A measured span in words.
+
+    Attributes
+    ----------
+    full : str
+        With its ±, and for a comb its rate.
+    short : str
+        The number alone, for a crowd.
+    """
+
+    full: str
+    short: str
+
+
+def caliper_value(reading: Reading, caliper: Caliper) -> ValueText:
+    """What a caliper measures, or why that is not known.
+
+    While something that the number rests on is not confirmed, or the scale is uncertain, a
+    question mark stands beside it, in the short form too.
+    """
+    if reading.sheet_map is None:
+        return ValueText(NO_GRID, NO_GRID)
+    values = measure_caliper(reading, caliper)
+    mark = f" {_UNCONFIRMED_MARK}" if any(map(_is_unconfirmed, values)) else ""
+    full = ", ".join(format_value(value) for value in values)
+    return ValueText(full + mark, _number_alone(values[0]) + mark)
+
+
+def _is_unconfirmed(value: Value) -> bool:
+    codes = [caution.code for caution in value.cautions]
+    return any(code.endswith("_unconfirmed") or code == "scale_uncertain" for code in codes)
+
+
+def _number_alone(value: Value) -> str:
+    if value.value is None or value.plus_minus is None:
+        return format_value(value)
+    return with_unit(shown_number(value.value, value.plus_minus), value.unit)

@@ -19,9 +19,12 @@ class Camera(QObject):
     -------
     moved(float)
         The transform is another one; its zoom, view px per picture px.
+    panned()
+        The transform is the same and shows another part.
     """
 
     moved = Signal(float)
+    panned = Signal()
 
     def __init__(self, view: QGraphicsView) -> None:
         super().__init__(view)
@@ -82,6 +85,7 @@ class Camera(QObject):
             (self._view.verticalScrollBar(), dy),
         ):
             bar.setValue(bar.value() - round(step))
+        self.panned.emit()
 
     def keep_in_sight(self, place: QPoint) -> bool:
         """Pan just so far that a viewport point comes off the edge; says whether it had to."""

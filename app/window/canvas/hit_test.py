@@ -49,7 +49,8 @@ def hit_test(
 
     Where two are equally near, the selected one wins, then the one drawn last (on top).
     """
-    for target in reversed(targets):
+    # Labels are painted in the order of their calipers, the selected ones after the others.
+    for target in sorted(targets, key=lambda target: target.selected)[::-1]:
         if target.label is not None and _contains(target.label, x, y):
             return Hit(target.caliper_id, None)
     legs = [

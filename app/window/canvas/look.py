@@ -1,7 +1,10 @@
 """Colours, pens and fonts of what is drawn over the picture.
 
-Every line has a pale rim, so that it stands out from pink, green and grey paper and from the
-pen line alike; what is selected differs in width and handles too, not in colour alone.
+Bars have a pale rim and stand out from pink, green and grey paper; legs and the cross have
+none, because it would hide the very line they are held against. What is selected differs in
+width and handles too, not in colour alone.
+
+All that comes in numbers is opaque: Qt blends translucent lines some twenty times slower.
 """
 
 from __future__ import annotations
@@ -14,13 +17,12 @@ from PySide6.QtGui import QColor, QFont, QPen
 DESK = QColor("#d5dbde")
 TEAL = QColor("#0b5563")
 ORANGE = QColor("#b8430b")
-# Opaque where many lines are drawn: Qt blends a translucent line some twenty times slower.
 RIM = QColor("#f4faf9")
 PLATE = QColor(250, 253, 253, 238)
 PLATE_EDGE = QColor("#7fa6ad")
 ON_ORANGE = QColor("#ffffff")
-GRID_BOLD = QColor("#4a68c8")
-GRID_THIN = QColor(20, 60, 190, 90)
+GRID_BOLD = QColor("#3156c4")
+GRID_THIN = QColor("#6f8bdc")
 
 LABEL_PX = 12
 LABEL_PADDING_X_PX = 6
@@ -36,27 +38,32 @@ def _pen(colour: QColor, width: float) -> QPen:
     return pen
 
 
+def _dashed(pen: QPen, *lengths: float) -> QPen:
+    """Ink and gaps, in view px."""
+    pen.setDashPattern([length / pen.widthF() for length in lengths])
+    return pen
+
+
 @dataclass(frozen=True, slots=True)
 class LineLook:
-    """A pen and the wider pale one under it."""
+    """A pen and the wider pale one under its bars."""
 
     rim: QPen
     pen: QPen
 
 
-PLAIN = LineLook(_pen(RIM, 2.8), _pen(TEAL, 1.3))
-CHOSEN = LineLook(_pen(RIM, 3.2), _pen(ORANGE, 1.6))
-HELD = LineLook(_pen(RIM, 4.4), _pen(ORANGE, 2.8))
-AIM = LineLook(_pen(RIM, 2.4), _pen(ORANGE, 1.0))
-GRID_BOLD_PEN = _pen(GRID_BOLD, 1.0)
-GRID_THIN_PEN = _pen(GRID_THIN, 1.0)
+PLAIN = LineLook(_pen(RIM, 3.2), _pen(TEAL, 1.3))
+CHOSEN = LineLook(_pen(RIM, 3.6), _pen(ORANGE, 1.6))
+HELD_PEN = _pen(ORANGE, 2.8)
+AIM_PEN = _pen(ORANGE, 1.0)
+# Dashed, so that the printed line shows in the gaps wherever the fit is good.
+GRID_BOLD_PEN = _dashed(_pen(GRID_BOLD, 1.0), 3.0, 3.0)
+GRID_THIN_PEN = _dashed(_pen(GRID_THIN, 1.0), 1.0, 3.0)
 
 
 def box_pen() -> QPen:
     """The dashed outline of a box being drawn."""
-    pen = _pen(ORANGE, 1.6)
-    pen.setStyle(Qt.PenStyle.DashLine)
-    return pen
+    return _dashed(_pen(ORANGE, 1.6), 6.0, 4.0)
 
 
 def label_font(*, strong: bool = False) -> QFont:

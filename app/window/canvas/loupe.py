@@ -75,9 +75,7 @@ class Loupe(QWidget):
         painter.drawPixmap(QPointF(source.left() - 0.5, source.top() - 0.5), self._pixmap, source)
         painter.resetTransform()
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
-        painter.setPen(look.AIM.rim)
-        painter.drawLines(self._arms)
-        painter.setPen(look.AIM.pen)
+        painter.setPen(look.AIM_PEN)
         painter.drawLines(self._arms)
         painter.setPen(QPen(QColor(look.ORANGE), 1.0))
         half = SIDE_PX / 2.0

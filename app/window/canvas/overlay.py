@@ -7,14 +7,14 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QPixmap, QTransform
 
 from app.reading import Caliper, Reading
 from app.window.canvas import look
-from app.window.canvas.caliper_text import caliper_name, caliper_value, short_name
+from app.window.canvas.caliper_text import ValueText, caliper_name, caliper_value, short_name
 from app.window.canvas.frame import SheetFrame, Vector, frame_of
 from app.window.canvas.hit_test import Hit, HitTarget, hit_test
 from app.window.canvas.ink_map import Box, InkMap
@@ -26,6 +26,7 @@ from app.window.canvas.label_layout import (
     place_labels,
 )
 from app.window.canvas.label_pixmaps import LabelPixmaps, LabelText
+from app.window.canvas.label_slide import Slide, slid_labels
 from app.window.canvas.lanes import choose_lanes, first_lane
 from app.window.canvas.selection import Part, Selection
 from app.window.canvas.shape import CaliperShape, Lane, Segment, caliper_shape
@@ -35,16 +36,33 @@ _MARGIN_PX = 8.0
 
 @dataclass(frozen=True, slots=True)
 class Drawn:
-    """One caliper laid out for painting and for the pointer."""
+    """One caliper laid out for painting and for the pointer; `lines_box` leaves out the label."""
 
-    caliper_id: int
-    lines: list[QLineF]
-    held_lines: list[QLineF]
+    legs: list[QLineF]
+    bar: list[QLineF]
+    held_legs: list[QLineF]
     handles: list[QPointF]
     label: tuple[QPointF, QPixmap] | None
+    slide: Slide | None
+    lines_box: QRectF
     bounds: QRectF
     chosen: bool
     target: HitTarget
+
+    def with_label_at(self, box: Box) -> Drawn:
+        """The same with its label elsewhere."""
+        if self.label is None:
+            return self
+        # Whole px, or the text would be blended between two rows of pixels.
+        left, top = round(box[0]), round(box[1])
+        pixmap = self.label[1]
+        label_box = QRectF(QPointF(left, top), pixmap.deviceIndependentSize())
+        return replace(
+            self,
+            label=(label_box.topLeft(), pixmap),
+            bounds=self.lines_box.united(label_box),
+            target=replace(self.target, label=_as_box(label_box)),
+        )
 
 
 class Overlay:
@@ -56,11 +74,13 @@ class Overlay:
         self._reading: Reading | None = None
         self._frame: SheetFrame | None = None
         self._lanes: dict[int, Lane] = {}
-        self._texts: dict[int, tuple[str, str]] = {}
+        self._texts: dict[int, tuple[str, ValueText]] = {}
         self._selection = Selection()
         self._transform = QTransform()
         self._previews: tuple[Caliper, ...] = ()
         self._view_box = QRectF()
+        self._slides: dict[int, Slide] = {}
+        self._slid: dict[int, Box] = {}
         self.settled: list[Drawn] = []
         self.moving: list[Drawn] = []
 
@@ -93,19 +113,28 @@ class Overlay:
         self._selection = selection
         self.lay_out()
 
-    def set_transform(self, transform: QTransform) -> None:
-        """Lay out for another zoom or turn."""
-        self._transform = QTransform(transform)
+    def set_transform(self, transform: QTransform, view_box: QRectF) -> None:
+        """Lay out for another zoom or turn, and for what of it is in view (canvas px)."""
+        self._transform, self._view_box = QTransform(transform), view_box
         self.lay_out()
 
-    def set_previews(self, previews: Iterable[Caliper], view_box: QRectF) -> bool:
+    def show_in(self, view_box: QRectF) -> list[QRectF]:
+        """Let the labels follow into another view of the same zoom; says what to paint anew."""
+        self._view_box = view_box
+        if not self.moving:
+            return self._slide_labels()
+        before = [drawn.bounds for drawn in self.moving]
+        self._lay_out_previews()
+        return [*before, *(drawn.bounds for drawn in self.moving), *self._slide_labels()]
+
+    def set_previews(self, previews: Iterable[Caliper]) -> bool:
         """Draw calipers as they would be; those with a known id replace the settled ones.
 
-        Their labels stay within `view_box` (canvas px), however far away their bars are.
-        Says whether the settled ones were laid out anew for it.
+        Their labels stay in view, however far away their bars are. Says whether the settled
+        ones were laid out anew for it.
         """
         before = {c.caliper_id for c in self._previews}
-        self._previews, self._view_box = tuple(previews), view_box
+        self._previews = tuple(previews)
         if before == {c.caliper_id for c in self._previews}:
             self._lay_out_previews()
             return False
@@ -127,13 +156,32 @@ class Overlay:
 
     def lay_out(self) -> None:
         """Place every label anew."""
-        self.settled = []
+        self.settled, self._slides, self._slid = [], {}, {}
         if self._reading is not None and self._frame is not None:
             hidden = {c.caliper_id for c in self._previews}
             self.settled = self._lay_out_settled(
                 [c for c in self._reading.calipers if c.caliper_id not in hidden], self._frame
             )
+            self._slides = {
+                index: drawn.slide
+                for index, drawn in enumerate(self.settled)
+                if drawn.slide is not None
+            }
+        self._slide_labels()
         self._lay_out_previews()
+
+    def _slide_labels(self) -> list[QRectF]:
+        """Bring labels into view; the boxes they left and took."""
+        before, self._slid = self._slid, slid_labels(self._slides, _as_box(self._view_box))
+        changed = []
+        for index in before.keys() | self._slid.keys():
+            drawn = self.settled[index]
+            moved = drawn.with_label_at(self._slid.get(index, self._slides[index].label))
+            self.settled[index] = moved
+            labels = drawn.target.label, moved.target.label
+            if labels[0] != labels[1]:
+                changed += [_as_rect(box) for box in labels if box]
+        return changed
 
     def _lay_out_settled(self, calipers: Sequence[Caliper], frame: SheetFrame) -> list[Drawn]:
         shapes: list[CaliperShape] = []
@@ -144,8 +192,11 @@ class Overlay:
             shapes.append(self._mapped(caliper_shape(caliper, frame, self._lanes[key])))
             chosen = key in self._selection.ids
             name, value = self._texts[key]
-            names = (name, short_name(caliper), "")
-            texts[key] = tuple(LabelText(shown, value, chosen) for shown in names)
+            texts[key] = (
+                LabelText(name, value.full, chosen),
+                LabelText(short_name(caliper), value.short, chosen),
+                LabelText("", value.short, chosen),
+            )
             requests.append(self._request(key, shapes[-1], texts[key], must_show=chosen))
         places = place_labels(requests, self._ink_share)
         drawn = []
@@ -165,7 +216,7 @@ class Overlay:
             lane = self._lanes.get(caliper.caliper_id, first_lane(caliper.kind))
             shape = self._mapped(caliper_shape(caliper, self._frame, lane))
             value = caliper_value(self._reading, caliper)
-            text = LabelText(caliper_name(caliper), value, chosen=True)
+            text = LabelText(caliper_name(caliper), value.full, chosen=True)
             request = self._request(caliper.caliper_id, shape, (text,), must_show=True)
             place = kept_within(centred_place(request), request.sizes[0], self._view_box)
             held = self._selection.part if caliper.caliper_id in self._selection.ids else Part.END
@@ -187,39 +238,33 @@ class Overlay:
         text: LabelText | None,
         part: Part | None,
     ) -> Drawn:
-        lines = [QLineF(*leg) for leg in shape.legs]
+        legs = [QLineF(*leg) for leg in shape.legs]
+        bar = [QLineF(*shape.bar), *_bar_ends(shape)]
         held: list[QLineF] = []
         handles: list[QPointF] = []
         if part in (Part.START, Part.END):
             index = 0 if part is Part.START else -1
-            held, handles = [lines[index]], [QPointF(*shape.marks[index])]
+            held, handles = [legs[index]], [QPointF(*shape.marks[index])]
         elif part is Part.WHOLE:
             handles = [QPointF(*mark) for mark in shape.marks]
-        lines.append(QLineF(*shape.bar))
-        lines += _bar_ends(shape)
-        bounds = _bounds(lines)
-        label, label_box = None, None
+        lines_box = _bounds(legs + bar)
+        label, label_box, slide = None, None, None
         if place is not None and text is not None:
-            pixmap = self._pixmaps.pixmap(text)
-            width, height = self._pixmaps.size(text)
             # Whole px, or the text would be blended between two rows of pixels.
-            left, top = round(place.left), round(place.top)
-            label = QPointF(left, top), pixmap
-            label_box = (left, top, left + width, top + height)
-            bounds = bounds.united(QRectF(left, top, width, height))
+            label = QPointF(round(place.left), round(place.top)), self._pixmaps.pixmap(text)
+            label_box = _as_box(QRectF(label[0], label[1].deviceIndependentSize()))
+            alone = part is not None and len(self._selection.ids) <= 1
+            slide = Slide(label_box, shape.bar, _as_box(lines_box), alone)
         target = HitTarget(key, shape.legs, shape.bar, label_box, part is not None)
-        bounds.adjust(-_MARGIN_PX, -_MARGIN_PX, _MARGIN_PX, _MARGIN_PX)
-        return Drawn(key, lines, held, handles, label, bounds, part is not None, target)
+        lines_box.adjust(-_MARGIN_PX, -_MARGIN_PX, _MARGIN_PX, _MARGIN_PX)
+        bounds = lines_box if label_box is None else lines_box.united(_as_rect(label_box))
+        chosen = part is not None
+        return Drawn(legs, bar, held, handles, label, slide, lines_box, bounds, chosen, target)
 
     def _ink_share(self, box: Box) -> float:
         if self._ink is None:
             return 0.0
-        in_picture = self._transform.inverted()[0].mapRect(
-            QRectF(box[0], box[1], box[2] - box[0], box[3] - box[1])
-        )
-        return self._ink.share(
-            (in_picture.left(), in_picture.top(), in_picture.right(), in_picture.bottom())
-        )
+        return self._ink.share(_as_box(self._transform.inverted()[0].mapRect(_as_rect(box))))
 
     def _mapped(self, shape: CaliperShape) -> CaliperShape:
         """A shape of picture_px in canvas px."""
@@ -249,6 +294,14 @@ def kept_within(place: LabelPlace, size: Size, box: QRectF) -> LabelPlace:
     left = max(min(place.left, box.right() - size[0] - _MARGIN_PX), box.left() + _MARGIN_PX)
     top = max(min(place.top, box.bottom() - size[1] - _MARGIN_PX), box.top() + _MARGIN_PX)
     return LabelPlace(left, top, place.size_index)
+
+
+def _as_box(rect: QRectF) -> Box:
+    return rect.left(), rect.top(), rect.right(), rect.bottom()
+
+
+def _as_rect(box: Box) -> QRectF:
+    return QRectF(QPointF(box[0], box[1]), QPointF(box[2], box[3]))
 
 
 def _bar_ends(shape: CaliperShape) -> list[QLineF]:

@@ -12,28 +12,27 @@ from app.window.canvas.overlay import Drawn
 
 
 def paint_calipers(painter: QPainter, drawn: Iterable[Drawn], exposed: QRegion) -> None:
-    """Draw those that touch what is exposed; labels last, above every line."""
+    """Draw those that touch what is exposed; labels last, the selected on top."""
     shown = [item for item in drawn if exposed.intersects(item.bounds.toAlignedRect())]
     if not shown:
         return
     painter.setRenderHint(QPainter.RenderHint.Antialiasing)
     for chosen, style in ((False, look.PLAIN), (True, look.CHOSEN)):
-        paint_lines(
-            painter, [line for item in shown if item.chosen is chosen for line in item.lines], style
-        )
-    paint_lines(painter, [line for item in shown for line in item.held_lines], look.HELD)
+        alike = [item for item in shown if item.chosen is chosen]
+        bars = [line for item in alike for line in item.bar]
+        paint_lines(painter, bars, style.rim)
+        paint_lines(painter, bars + [leg for item in alike for leg in item.legs], style.pen)
+    paint_lines(painter, [leg for item in shown for leg in item.held_legs], look.HELD_PEN)
     _paint_handles(painter, shown)
-    for item in shown:
+    for item in sorted(shown, key=lambda item: item.chosen):
         if item.label is not None:
             painter.drawPixmap(*item.label)
 
 
-def paint_lines(painter: QPainter, lines: list[QLineF], style: look.LineLook) -> None:
-    """Lines with their rim."""
+def paint_lines(painter: QPainter, lines: list[QLineF], pen: QPen) -> None:
+    """Lines, if there are any."""
     if lines:
-        painter.setPen(style.rim)
-        painter.drawLines(lines)
-        painter.setPen(style.pen)
+        painter.setPen(pen)
         painter.drawLines(lines)
 
 
@@ -43,7 +42,7 @@ def _paint_handles(painter: QPainter, shown: Iterable[Drawn]) -> None:
         if not item.handles:
             continue
         painter.setPen(QPen(look.ORANGE, 1.6))
-        painter.setBrush(QBrush(look.ORANGE if item.held_lines else QColor("white")))
+        painter.setBrush(QBrush(look.ORANGE if item.held_legs else QColor("white")))
         for place in item.handles:
             painter.drawEllipse(place, radius, radius)
 

@@ -95,6 +95,7 @@ class SheetView(QGraphicsView):
         self._placing = Placing(self)
         self._camera = Camera(self)
         self._camera.moved.connect(self._camera_moved)
+        self._camera.panned.connect(self._follow_view)
         document.opened.connect(self._picture_opened)
         document.changed.connect(self._reading_changed)
         if document.picture is not None:
@@ -138,7 +139,7 @@ class SheetView(QGraphicsView):
         before = self._moving_bounds()
         self._box = None
         self._aim_mark.set_aim(aim)
-        everything = self._overlay.set_previews(calipers, self._view_box())
+        everything = self._overlay.set_previews(calipers)
         self._lay_out_aim()
         self._repaint(None if everything else before.united(self._moving_bounds()))
 
@@ -414,7 +415,7 @@ class SheetView(QGraphicsView):
 
     def _camera_moved(self, zoom: float) -> None:
         self._picture_item.suit_zoom(zoom)
-        self._overlay.set_transform(self.transform())
+        self._overlay.set_transform(self.transform(), self._view_box())
         self._lay_out_aim()
         self._repaint(None)
         self.zoom_changed.emit(zoom)
@@ -423,6 +424,12 @@ class SheetView(QGraphicsView):
         """Keep the sheet fitted, or where it was."""
         super().resizeEvent(event)
         self._camera.resized()
+        self._follow_view()
+
+    def _follow_view(self) -> None:
+        """The same zoom shows another part: labels at its edge stay in view."""
+        for changed in self._overlay.show_in(self._view_box()):
+            self._repaint(changed)
 
     def _canvas_offset(self) -> QPointF:
         """From canvas px to view px."""
@@ -474,7 +481,7 @@ class SheetView(QGraphicsView):
         painter.setWorldTransform(QTransform.fromTranslate(offset.x(), offset.y()))
         paint_calipers(painter, self._overlay.settled, exposed)
         paint_calipers(painter, self._overlay.moving, exposed)
-        paint_lines(painter, self._aim_mark.lines, look.AIM)
+        paint_lines(painter, self._aim_mark.lines, look.AIM_PEN)
         if self._box is not None:
             paint_box(painter, self.transform().mapRect(self._box))
         painter.restore()
