@@ -93,7 +93,10 @@ def grid_sentences(sheet_map: SheetMap | None) -> list[str]:
         return ["Grid: none found and no scale given."]
     found = "given by a box the reader drew" if sheet_map.source == "reader" else "found"
     error_mm = largest_error_mm(sheet_map)
-    error = "not known" if error_mm is None else f"at most {error_mm:.2g} mm where it was seen"
+    # Rounded up: "at most" stays true.
+    error = "not known"
+    if error_mm is not None:
+        error = f"at most {math.ceil(1e4 * error_mm) / 1e4:.4f} mm where it was seen"
     certain = "certain" if sheet_map.scale_is_certain else "NOT certain"
     sentences = [
         f"Grid {found}: {sheet_map.x_pitch_px_per_mm:.3f} px per small square along the paper, "

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import math
 import os
 import subprocess
 import sys
@@ -95,6 +96,16 @@ def test_the_grid_of_a_picture_is_told(picture: Picture, said: Say, grids: objec
     assert "Scale (1 mm or 5 mm): certain." in out
     assert "Bold lines seen every fifth line." in out
     assert errors == ""
+
+
+def test_the_grid_of_a_real_page_is_the_one_it_was_drawn_with(said: Say) -> None:
+    page = REPOSITORY / "sample_scans" / "twelve_lead_25.jpg"
+    truth = json.loads(page.with_suffix(".truth.json").read_text(encoding="utf-8"))
+    (x_px, _, _), (y_px, _, _) = truth["px_from_mm"]
+    assert main(["grid", "--json", str(page)]) == 0
+    grid = json.loads(said()[0])["pictures"][0]["grid"]
+    assert grid["x_pitch_px_per_mm"] == pytest.approx(math.hypot(x_px, y_px), rel=2e-4)
+    assert grid["scale_is_certain"] is True
 
 
 def test_the_grid_for_other_programs(picture: Picture, said: Say, grids: object) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from dataclasses import replace
 
 import numpy as np
@@ -113,6 +114,9 @@ def test_the_largest_error_is_that_of_the_worst_place_seen() -> None:
     found_mm = largest_error_mm(sheet_map)
     assert found_mm is not None
     assert 0.9 * worst_mm < found_mm <= worst_mm
+    shown = re.search(r"at most (\d\.\d{4}) mm", " ".join(grid_sentences(sheet_map)))
+    assert shown is not None
+    assert found_mm <= float(shown[1]) < found_mm + 1e-4
     unseen = replace(sheet_map, coverage=Coverage.from_cells(np.zeros((3, 4), dtype=bool), 300.0))
     assert largest_error_mm(unseen) is None
     assert "not known" in " ".join(grid_sentences(unseen))
