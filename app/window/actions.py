@@ -130,7 +130,7 @@ ACTIONS: tuple[ActionRow, ...] = (
         "select_all", EDIT, "Select &all calipers", "Ctrl+A", lambda w: w.view.select_all(), picture
     ),
     ActionRow("fit", VIEW, "&Fit sheet", "F", lambda w: w.view.fit_sheet(), picture),
-    ActionRow("actual", VIEW, "&Actual size (1:1)", "1", lambda w: w.view.zoom_actual(), picture),
+    ActionRow("actual", VIEW, "&Actual size (1:1)", "1", lambda w: w.zoom_actual(), picture),
     ActionRow("zoom_in", VIEW, "Zoom &in", "Ctrl++", lambda w: w.view.zoom_by(1.25), picture),
     ActionRow("zoom_out", VIEW, "Zoom &out", "Ctrl+-", lambda w: w.view.zoom_by(0.8), picture),
     ActionRow("view_1", VIEW),

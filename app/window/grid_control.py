@@ -79,6 +79,8 @@ class GridControl(QObject):
                 (corner.x_px, corner.y_px),
                 (opposite.x_px, opposite.y_px),
                 *squares,
+                # Drawn no more finely than the screen shows the picture.
+                corner_error_px=max(1.0, 1.0 / self._view.zoom()),
             )
         except ValueError as error:
             self._ask.tell("Give the scale by hand", f"No scale was set: {error}.")

@@ -5,8 +5,8 @@ from __future__ import annotations
 import logging
 from dataclasses import replace
 
-from PySide6.QtCore import Qt
-from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QGuiApplication
+from PySide6.QtCore import QPointF, Qt
+from PySide6.QtGui import QCloseEvent, QCursor, QDragEnterEvent, QDropEvent, QGuiApplication
 from PySide6.QtWidgets import QLabel, QMainWindow, QSplitter, QVBoxLayout, QWidget
 
 from app.reading.marks import PicturePoint
@@ -25,7 +25,12 @@ from app.window.panels.prompt import Prompt
 from app.window.panels.settings import SettingsStrip
 from app.window.panels.worksheet import Worksheet
 from app.window.saving import Leaving, Saving
-from app.window.statements import grid_statement, pointer_statement, unconfirmed_statement
+from app.window.statements import (
+    coarse_zoom_statement,
+    grid_statement,
+    pointer_statement,
+    unconfirmed_statement,
+)
 from app.window.walk import Walk
 
 _log = logging.getLogger(__name__)
@@ -110,6 +115,15 @@ class MainWindow(QMainWindow):
             turned = reading.sheet_map.turned(quarter_turns)
             self.document.edit(replace(reading, sheet_map=turned), "Turn sheet")
 
+    def zoom_actual(self) -> None:
+        """One picture pixel on one screen pixel; what is under the pointer stays there."""
+        viewport = self.view.viewport()
+        pointer = viewport.mapFromGlobal(QCursor.pos())
+        if viewport.rect().contains(pointer):
+            self.view.zoom_at(1.0 / self.view.zoom(), QPointF(pointer))
+        else:
+            self.view.zoom_actual()
+
     def show_keys(self) -> None:
         """List every key."""
         from app.window.dialogs.about import KeysDialog
@@ -182,6 +196,7 @@ class MainWindow(QMainWindow):
         self.view.zoom_changed.connect(self._zoom)
         self.walk.idle_words.connect(self.prompt.set_idle)
         self.walk.moved.connect(self._follow_actions)
+        self.walk.moved.connect(self._hint)
         self.opening.failed.connect(self._refused)
         self.saving.failed.connect(self._refused)
         self.worksheet.refused.connect(self._refused)
@@ -284,6 +299,15 @@ class MainWindow(QMainWindow):
     def _zoom(self, factor: float) -> None:
         is_there = self.document.picture is not None
         self._zoom_label.setText(f"{100.0 * factor:.0f} %" if is_there else "")
+        self._hint()
+
+    def _hint(self) -> None:
+        """While marks are placed, say when the screen shows them too coarsely."""
+        reading = self.document.reading
+        sheet_map = None if reading is None else reading.sheet_map
+        is_placing = self.view.is_placing()
+        words = coarse_zoom_statement(self.view.zoom(), sheet_map) if is_placing else ""
+        self.prompt.set_hint(words)
 
 
 def _stacked(*widgets: QWidget) -> QWidget:

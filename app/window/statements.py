@@ -11,6 +11,8 @@ from app.reading.marks import PicturePoint
 from app.reading.model import Reading
 from imaging.sheet_map import SheetMap
 
+# Half a pen's width (common practice, no source): 8 ms at 25 mm/s.
+_COARSE_SCREEN_PX_MM = 0.2
 _EVIDENCE_WORDS = {
     Evidence.DEFAULT: "default",
     Evidence.PULSE: "pulse",
@@ -94,6 +96,24 @@ def pointer_statement(point: PicturePoint | None, sheet_map: SheetMap | None) ->
     if not (math.isfinite(x_mm) and math.isfinite(y_mm)):
         return ""
     return f"x {x_mm:.1f} mm, y {y_mm:.1f} mm"
+
+
+def coarse_zoom_statement(view_px_per_picture_px: float, sheet_map: SheetMap | None) -> str:
+    """Why to zoom in before marking; empty where the screen shows enough.
+
+    The ± of a mark holds half a pen's width and one picture pixel. A screen pixel that is
+    larger than half a pen's width would add to that what the ± does not know.
+    """
+    if sheet_map is None:
+        return ""
+    pitch_px_per_mm = min(sheet_map.x_pitch_px_per_mm, sheet_map.y_pitch_px_per_mm)
+    screen_px_mm = 1.0 / (view_px_per_picture_px * pitch_px_per_mm)
+    if screen_px_mm <= _COARSE_SCREEN_PX_MM:
+        return ""
+    return (
+        f"One screen pixel is {screen_px_mm:.1f} mm here: zoom in with the wheel, or press 1, "
+        "for sharper marks."
+    )
 
 
 def holds_work(reading: Reading) -> bool:

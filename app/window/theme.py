@@ -42,6 +42,7 @@ _SHEET = f"""
 QToolTip {{ background: {PAPER}; color: {INK}; border: 1px solid {EDGE}; padding: 3px; }}
 #prompt {{ background: {PAPER}; border-bottom: 1px solid {EDGE}; }}
 #promptText {{ color: {ACCENT}; font-weight: 600; }}
+#hint {{ color: {WARN_INK}; font-size: 9pt; }}
 #settings {{ background: {DESK}; border-bottom: 1px solid {EDGE}; }}
 #notice[kind="warn"] {{ background: {WARN_WASH}; border-bottom: 1px solid {WARN_EDGE}; }}
 #notice[kind="stop"] {{ background: {STOP_WASH}; border-bottom: 1px solid {STOP_EDGE}; }}

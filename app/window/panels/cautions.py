@@ -112,7 +112,8 @@ def _below_title(row: Row | None) -> list[QWidget]:
         widgets.append(
             _quiet(
                 f"Spread (standard deviation, n = {value.n}): "
-                f"{shown_number(value.spread, value.spread)} {shown_unit(value.unit)}"
+                f"{shown_number(value.spread, value.plus_minus or value.spread)} "
+                f"{shown_unit(value.unit)}"
             )
         )
     widgets.append(_quiet(f"Method: {value.method}"))

@@ -11,6 +11,7 @@ from PySide6.QtWidgets import (
     QProgressBar,
     QPushButton,
     QSizePolicy,
+    QVBoxLayout,
     QWidget,
 )
 
@@ -78,13 +79,20 @@ class Prompt(QFrame):
         self.bar.setTextVisible(False)
         self.cancel = QPushButton("Cancel")
         self.cancel.clicked.connect(self.cancel_wanted)
+        self.hint = QLabel()
+        self.hint.setObjectName("hint")
+        self.hint.setVisible(False)
+        words = QVBoxLayout()
+        words.setSpacing(0)
+        words.addWidget(self.text)
+        words.addWidget(self.hint)
         layout = QHBoxLayout(self)
-        layout.setContentsMargins(14, 6, 12, 6)
-        layout.addWidget(self.text, 1)
+        layout.setContentsMargins(14, 2, 12, 2)
+        layout.addLayout(words, 1)
         for widget in (self.busy, self.bar, self.cancel):
             layout.addWidget(widget)
         # Of one height whatever it says: the canvas must not move under a hand that aims.
-        self.setFixedHeight(42)
+        self.setFixedHeight(46)
         self.set_busy("", can_be_given_up=False)
 
     def set_idle(self, words: str) -> None:
@@ -96,6 +104,11 @@ class Prompt(QFrame):
         """What a gesture on the canvas asks for; empty when it has ended."""
         self._gesture = words
         self._show()
+
+    def set_hint(self, words: str) -> None:
+        """A quieter line below; empty for none."""
+        self.hint.setText(words)
+        self.hint.setVisible(bool(words))
 
     def set_busy(self, title: str, *, can_be_given_up: bool) -> None:
         """Show what is being worked on; an empty title hides bar and button."""

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
+import pytest
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QCursor
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication, QTableWidget
 
 from app.window.actions import ACTIONS, keys_list
 from app.window.dialogs.about import AboutDialog, KeysDialog
 from app.window.main_window import MainWindow
-from tests.app.window.bench import measure, reading_of
+from tests.app.window.bench import measure, place_of, reading_of
 
 WITHOUT_PICTURE = {"open", "paste", "quit", "keys", "details", "about"}
 
@@ -88,3 +90,18 @@ def test_view_actions_reach_the_canvas(opened: MainWindow) -> None:
     opened.actions_table.action("zoom_out").trigger()
     opened.actions_table.action("fit").trigger()
     assert opened.view.zoom() < 1.0
+
+
+def test_one_to_one_zooms_at_the_pointer(
+    opened: MainWindow, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    viewport = opened.view.viewport()
+    place = place_of(opened, 700.0, 200.0)
+    monkeypatch.setattr(QCursor, "pos", lambda: viewport.mapToGlobal(place))
+    opened.view.zoom_by(2.0)
+    there = opened.view.picture_px_from_view_px(place)
+    QTest.keyClick(opened, Qt.Key.Key_1)
+    assert opened.view.zoom() == pytest.approx(1.0)
+    now = opened.view.picture_px_from_view_px(place)
+    assert now.x_px == pytest.approx(there.x_px, abs=2.0)
+    assert now.y_px == pytest.approx(there.y_px, abs=2.0)

@@ -149,6 +149,18 @@ def test_a_beat_of_an_open_line_can_be_picked_and_removed(opened: MainWindow) ->
     assert item.isExpanded()
 
 
+def test_a_screen_too_coarse_to_mark_on_is_said_while_marking(opened: MainWindow) -> None:
+    opened.view.zoom_actual()
+    pick_line(opened, "qrs", "II")
+    assert not opened.prompt.hint.isVisible()
+    opened.view.zoom_by(0.4)
+    assert opened.prompt.hint.isVisible()
+    # 0.4 view px for a picture px, 8 picture px to a small square.
+    assert "One screen pixel is 0.3 mm" in opened.prompt.hint.text()
+    opened.view.cancel_gesture()
+    assert not opened.prompt.hint.isVisible()
+
+
 def test_escape_leaves_a_line_unmarked(opened: MainWindow) -> None:
     pick_line(opened, "qrs", "II")
     click_picture(opened, 300.0, 300.0)
