@@ -15,10 +15,13 @@ import sys
 from collections.abc import Callable, Sequence
 from contextlib import suppress
 from pathlib import Path
-from typing import Any, NoReturn
+from typing import TYPE_CHECKING, Any, NoReturn
 
 from app.version import software_version
 from imaging.errors import SmallsquareError
+
+if TYPE_CHECKING:
+    from app.reading import Reading
 
 Json = dict[str, Any]
 AddArguments = Callable[[argparse.ArgumentParser], None]
@@ -189,9 +192,9 @@ def _grid_of(path: Path, *, as_text: bool) -> Json:
 
 def _values(options: argparse.Namespace) -> int:
     from app.chart import values_as_text, values_document
-    from app.reading import check_picture, load_reading
+    from app.reading import check_picture
 
-    reading = load_reading(options.reading)
+    reading = _saved_reading(options.reading)
     # The values stand by themselves, so this is said and nothing more.
     moved_or_changed = check_picture(reading.picture, options.reading).sentence
     if moved_or_changed:
@@ -205,16 +208,28 @@ def _values(options: argparse.Namespace) -> int:
 
 def _annotate(options: argparse.Namespace) -> int:
     from app.chart import write_annotated
-    from app.reading import PictureState, check_picture, load_reading
+    from app.reading import PictureState, check_picture
     from imaging import open_picture
 
-    reading = load_reading(options.reading)
+    reading = _saved_reading(options.reading)
     check = check_picture(reading.picture, options.reading)
     if check.state is not PictureState.SAME:
         return _refuse(check.sentence)
     picture = open_picture(check.path, reading.picture.page)
     write_annotated(picture, reading, options.output, overwrite=options.force)
     return DONE
+
+
+def _saved_reading(path: Path) -> Reading:
+    """A reading as it was last saved; edits made since are not in it, and that is said."""
+    from app.reading import load_reading
+    from app.reading.journal import read_journal
+
+    reading = load_reading(path)
+    later = read_journal(path)
+    if later is not None and later != reading:
+        _say(f"edits made after {path.name} was last saved are left out; open it to save them")
+    return reading
 
 
 _COMMANDS: dict[str, tuple[AddArguments, Run]] = {

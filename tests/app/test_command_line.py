@@ -19,6 +19,7 @@ from app.calculator import work_out
 from app.chart import values_document
 from app.command_line import main
 from app.reading import Reading, save_reading
+from app.reading.journal import append_to_journal
 from app.version import software_version
 from imaging import GridNotFound, Picture, SheetMap
 from tests.app.chart.chart_examples import full_reading, picture_file, upright_map
@@ -192,6 +193,21 @@ def test_values_of_a_reading_without_its_picture_say_so(
     sentence = refused_with(main(["annotate", str(reading_path), "-o", str(target)]), said()[1])
     assert "scan é 1.png" in sentence
     assert not target.exists()
+
+
+def test_edits_that_were_never_saved_are_said_to_be_left_out(
+    reading_path: Path, picture: Picture, said: Say
+) -> None:
+    reading = full_reading(picture)
+    append_to_journal(reading_path, reading)
+    assert main(["values", str(reading_path)]) == 0
+    assert said()[1] == ""
+    append_to_journal(reading_path, replace(reading, calipers=()))
+    assert main(["values", str(reading_path)]) == 0
+    out, errors = said()
+    assert "QRS" in out
+    assert "edits made after scan é 1.reading.json was last saved are left out" in errors
+    assert errors.count("\n") == 1
 
 
 def test_the_annotated_picture_is_written(reading_path: Path, said: Say) -> None:
