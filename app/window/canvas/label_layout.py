@@ -15,13 +15,14 @@ from app.window.canvas.shape import Segment
 Size = tuple[float, float]
 
 _GAP_PX = 4.0
-_INK_COST = 120.0
+_INK_COST_PER_PX2 = 0.06
+_OVERHANG_COST_PER_PX = 0.03
 _OVERLAP_COST = 100.0
 _OTHER_BAR_COST = 6.0
 _OTHER_SLOT_COST = 5.0
-_SHORT_COST = 2.0
-_SHIFT_COST = 4.0
-_STACK_COST = 5.0
+_SHORT_COST = 1.5
+_SHIFT_COST = 5.0
+_STACK_COST = 5.5
 _DROPPED_FROM = 60.0
 
 
@@ -39,7 +40,7 @@ class LabelRequest:
     sizes : sequence of (float, float)
         Width and height of the full label, then of up to two shorter ones.
     must_show : bool
-        The selected caliper's label is never dropped nor shortened.
+        The label of a caliper selected alone is never dropped nor shortened.
     """
 
     caliper_id: int
@@ -118,7 +119,8 @@ def _best(
         if index >= count:
             continue
         box = _box(request, request.sizes[index], shift, stack)
-        cost = own_cost + _INK_COST * ink_share(box)
+        cost = own_cost + _OVERHANG_COST_PER_PX * _overhang(request, index)
+        cost += _INK_COST_PER_PX2 * ink_share(box) * (box[2] - box[0]) * (box[3] - box[1])
         cost += _OVERLAP_COST * sum(_shared(box, other) for other in taken)
         for bar, slot in others:
             cost += _OTHER_BAR_COST * (_shared(box, bar) > 0.0)
@@ -148,6 +150,14 @@ def _box(request: LabelRequest, size: Size, shift: float, stack: float) -> Box:
         centre_y += shift * (reach + stack * (height + 2.0))
     left, top = centre_x - width / 2.0, centre_y - height / 2.0
     return left, top, left + width, top + height
+
+
+def _overhang(request: LabelRequest, size_index: int) -> float:
+    """How much longer a label is than its bar: it then looks as if it were its neighbour's."""
+    x1, y1, x2, y2 = request.bar
+    width, height = request.sizes[size_index]
+    is_level = abs(request.outward[1]) >= abs(request.outward[0])
+    return max(0.0, width - abs(x2 - x1) if is_level else height - abs(y2 - y1))
 
 
 def _bar_box(bar: Segment) -> Box:

@@ -12,6 +12,7 @@ from app.window.canvas.ink_map import Box
 from app.window.canvas.shape import Segment
 
 _EDGE_PX = 8.0
+_GAP_PX = 10.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,22 +38,33 @@ class Slide:
 
     def within(self, room: Box) -> Box:
         """The label as far into a room as it may go."""
-        left, top, right, bottom = self.label
         x1, y1, x2, y2 = self.bar
         if abs(x2 - x1) >= abs(y2 - y1):
-            along = _moved(left, right, room[0::2], (min(x1, x2), max(x1, x2)))
-            step = along, along * (y2 - y1) / (x2 - x1) if x1 != x2 else 0.0
+            along = _step_along(self.label[0::2], sorted((x1, x2)), room[0::2])
+            slope = (y2 - y1) / (x2 - x1) if x1 != x2 else 0.0
+            box = _stepped(self.label, (along, along * slope))
         else:
-            along = _moved(top, bottom, room[1::2], (min(y1, y2), max(y1, y2)))
-            step = along * (x2 - x1) / (y2 - y1), along
-        left, top, right, bottom = _stepped(self.label, step)
-        if not self.is_free:
-            return left, top, right, bottom
-        step = (
-            _moved(left, right, room[0::2], self.caliper[0::2]),
-            _moved(top, bottom, room[1::2], self.caliper[1::2]),
-        )
-        return _stepped((left, top, right, bottom), step)
+            along = _step_along(self.label[1::2], sorted((y1, y2)), room[1::2])
+            box = _stepped(self.label, (along * (x2 - x1) / (y2 - y1), along))
+        if self.is_free and not _holds(room, box):
+            return self._beside_legs(box, room)
+        return box
+
+    def _beside_legs(self, box: Box, room: Box) -> Box:
+        """Next to the caliper, where no mark is hidden, and in the room whatever it takes."""
+        across = _step_into(box[0::2], room[0::2])
+        down = _step_into(box[1::2], room[1::2])
+        left, top, right, bottom = self.caliper
+        x1, y1, x2, y2 = self.bar
+        if abs(x2 - x1) >= abs(y2 - y1):
+            beside = (right + _GAP_PX - box[0], left - _GAP_PX - box[2])
+            steps = [(step, down) for step in beside]
+        else:
+            steps = [(across, step) for step in (top - _GAP_PX - box[3], bottom + _GAP_PX - box[1])]
+        for step in steps:
+            if _holds(room, _stepped(box, step)):
+                return _stepped(box, step)
+        return _stepped(box, (across, down))
 
 
 def slid_labels(slides: Mapping[int, Slide], view: Box) -> dict[int, Box]:
@@ -69,10 +81,17 @@ def slid_labels(slides: Mapping[int, Slide], view: Box) -> dict[int, Box]:
     return slid
 
 
-def _moved(low: float, high: float, room: Sequence[float], reach: Sequence[float]) -> float:
-    """The step that brings an interval into a room, but not further beyond its reach."""
-    wanted = max(min(0.0, room[1] - high), room[0] - low)
-    return min(max(wanted, min(0.0, reach[0] - low)), max(0.0, reach[1] - high))
+def _step_along(label: Sequence[float], bar: Sequence[float], room: Sequence[float]) -> float:
+    """How far a label goes along its bar: within the bar, or if longer, still all over it."""
+    length = label[1] - label[0]
+    low, high = min(bar[0], bar[1] - length), max(bar[1], bar[0] + length)
+    step = _step_into(label, room)
+    return min(max(step, min(0.0, low - label[0])), max(0.0, high - label[1]))
+
+
+def _step_into(interval: Sequence[float], room: Sequence[float]) -> float:
+    """The step that brings an interval into a room; its beginning, if it is too long."""
+    return max(min(0.0, room[1] - interval[1]), room[0] - interval[0])
 
 
 def _stepped(box: Box, step: tuple[float, float]) -> Box:

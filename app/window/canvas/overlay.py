@@ -197,7 +197,8 @@ class Overlay:
                 LabelText(short_name(caliper), value.short, chosen),
                 LabelText("", value.short, chosen),
             )
-            requests.append(self._request(key, shapes[-1], texts[key], must_show=chosen))
+            alone = self._selection.ids == {key}
+            requests.append(self._request(key, shapes[-1], texts[key], must_show=alone))
         places = place_labels(requests, self._ink_share)
         drawn = []
         for caliper, shape in zip(calipers, shapes, strict=True):
@@ -253,8 +254,8 @@ class Overlay:
             # Whole px, or the text would be blended between two rows of pixels.
             label = QPointF(round(place.left), round(place.top)), self._pixmaps.pixmap(text)
             label_box = _as_box(QRectF(label[0], label[1].deviceIndependentSize()))
-            alone = part is not None and len(self._selection.ids) <= 1
-            slide = Slide(label_box, shape.bar, _as_box(lines_box), alone)
+            alone = self._selection.ids == {key}
+            slide = Slide(label_box, shape.bar, _as_box(lines_box), is_free=alone)
         target = HitTarget(key, shape.legs, shape.bar, label_box, part is not None)
         lines_box.adjust(-_MARGIN_PX, -_MARGIN_PX, _MARGIN_PX, _MARGIN_PX)
         bounds = lines_box if label_box is None else lines_box.united(_as_rect(label_box))

@@ -1,0 +1,71 @@
+"""The grid as plain numbers: there and back, and kept on the picture."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+import pytest
+
+from app.reading import PicturePoint
+from app.window.canvas.frame import SheetFrame, frame_of
+from tests.app.reading_examples import example_map, example_reading
+from tests.app.window.canvas.hands import blank_picture, reading_of
+
+SKEWED = SheetFrame((13.0, 7.0), (9.8, 0.7), (-0.6, 10.1), (2000, 1000), has_grid=True)
+
+
+def test_it_agrees_with_the_map() -> None:
+    sheet_map = replace(example_map(), x_step_px=(7.9, 0.6), y_step_px=(-0.5, 8.1)).turned(1)
+    frame = frame_of(reading_of(blank_picture(), sheet_map=sheet_map))
+    points_px = np.array([[0.0, 0.0], [311.5, 402.25], [1199.0, 899.0]])
+    for point_px, point_mm in zip(points_px, sheet_map.to_mm(points_px), strict=True):
+        assert frame.mm_from_px(PicturePoint(*point_px)) == pytest.approx(tuple(point_mm))
+        assert frame.px_from_mm(*point_mm) == pytest.approx(tuple(point_px))
+
+
+def test_without_a_grid_it_is_a_guess_and_says_so() -> None:
+    frame = frame_of(replace(example_reading(), sheet_map=None))
+    assert not frame.has_grid
+    assert frame.x_step_px[0] == frame.y_step_px[1] > 0.0
+
+
+def test_a_key_goes_a_tenth_of_a_small_square_or_a_quarter_of_a_pixel() -> None:
+    assert SKEWED.key_step_mm() == 0.1
+    guessed = frame_of(replace(example_reading(), sheet_map=None))
+    step_px = guessed.px_step(guessed.key_step_mm(), 0.0)
+    assert step_px == pytest.approx((0.25, 0.0))
+
+
+@pytest.mark.parametrize(
+    ("wanted", "given"),
+    [
+        ((-5.0, 20.0), (0.0, 20.0)),
+        ((2500.0, 1200.0), (1999.0, 999.0)),
+        ((3.25, 4.5), (3.25, 4.5)),
+    ],
+)
+def test_places_are_kept_on_the_picture(
+    wanted: tuple[float, float], given: tuple[float, float]
+) -> None:
+    assert SKEWED.clamped(*wanted) == PicturePoint(*given)
+
+
+@pytest.mark.parametrize(
+    ("step_px", "share"),
+    [
+        ((100.0, 0.0), 0.99),  # from 1900 there are 99 px left
+        ((-100.0, 0.0), 1.0),
+        ((100.0, 1980.0), 0.25),  # 495 px down is where the picture ends
+        ((0.0, -1010.0), 0.5 * 1008.0 / 1010.0),
+        ((0.0, 0.0), 1.0),
+    ],
+)
+def test_how_much_of_a_step_stays_on_the_picture(
+    step_px: tuple[float, float], share: float
+) -> None:
+    assert SKEWED.share_inside(PicturePoint(1900.0, 504.0), step_px) == pytest.approx(share)
+
+
+def test_from_the_edge_outward_there_is_no_step() -> None:
+    assert SKEWED.share_inside(PicturePoint(1999.0, 500.0), (1.0, 0.0)) == 0.0
