@@ -13,9 +13,10 @@ from typing import TYPE_CHECKING, Any
 
 from imaging.picture_colour import rgb_pixels
 from imaging.picture_parts import CUT_SHORT, DAMAGED, Decoded, Refused, check_page, check_size
+from imaging.picture_tiff import check_tiff_data, check_tiff_directories
 
 if TYPE_CHECKING:
-    from PIL import Image, TiffImagePlugin
+    from PIL import Image
 
 _log = logging.getLogger(__name__)
 
@@ -164,12 +165,13 @@ def _check_png_chunks(data: bytes) -> None:
 def _decode_tiff(data: bytes, page: int, max_pixels: int) -> Decoded:
     from PIL.TiffImagePlugin import TiffImageFile
 
+    check_tiff_directories(data)
     image = TiffImageFile(io.BytesIO(data))
     page_count = image.n_frames
     check_page(page, page_count)
     image.seek(page)
     check_size(image.width, image.height, max_pixels)
-    _check_tiff_data(image, len(data))
+    check_tiff_data(image, len(data))
     bits = image.tag_v2.get(258, (1,))
     if image.mode in ("I", "F"):
         raise Refused(
@@ -186,19 +188,6 @@ def _decode_tiff(data: bytes, page: int, max_pixels: int) -> Decoded:
     notes = (HIGH_BYTE,) if max(bits) == 16 else ()
     white_is_zero = image.tag_v2.get(262) == 0 and max(bits) == 16
     return _finish(image, notes, page_count, white_is_zero=white_is_zero)
-
-
-def _check_tiff_data(image: TiffImagePlugin.TiffImageFile, file_bytes: int) -> None:
-    """Refuse a page whose strips or tiles reach beyond the file's end.
-
-    StripOffsets, StripByteCounts, TileOffsets, TileByteCounts: TIFF 6.0, sections 8 and 15.
-    """
-    for offsets_tag, counts_tag in ((273, 279), (324, 325)):
-        offsets, counts = image.tag_v2.get(offsets_tag), image.tag_v2.get(counts_tag)
-        if offsets is None or counts is None:
-            continue
-        if any(offset + count > file_bytes for offset, count in zip(offsets, counts, strict=False)):
-            raise Refused(CUT_SHORT)
 
 
 def _decode_webp(data: bytes, max_pixels: int) -> Decoded:

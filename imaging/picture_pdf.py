@@ -25,6 +25,9 @@ _PDFIUM_LOCK = threading.Lock()
 
 _DEFAULT_DPI, _LOWEST_DPI, _HIGHEST_DPI = 300.0, 150.0, 600.0
 _POINTS_PER_INCH = 72.0
+_HAIR_PX = 0.001
+"""Kept free all round: PDFium stretches an image to whole pixels, outwards, so that one that
+ends a rounding error beyond the page's edge would be blurred over a pixel more."""
 _SHARE_OF_PAGE = 0.05
 """An image smaller than this is a logo and does not set the resolution; no source."""
 
@@ -55,16 +58,17 @@ def decode_pdf_page(data: bytes, page: int, max_pixels: int) -> Decoded:
 
 
 def _open_document(data: bytes) -> Any:
+    """The document; it refers to `data`, which must outlive it."""
     import pypdfium2
+    import pypdfium2.raw as pdfium
 
-    try:
-        return pypdfium2.PdfDocument(data)
-    except pypdfium2.PdfiumError as error:
-        if "password" in str(error).lower():
-            raise Refused(
-                "is locked with a password; save a copy without one and open the copy."
-            ) from error
-        raise Refused(DAMAGED) from error
+    # Not through the helper: for a file without pages it reports the last file's error.
+    handle = pdfium.FPDF_LoadMemDocument64(data, len(data), None)
+    if handle:
+        return pypdfium2.PdfDocument(handle)
+    if pdfium.FPDF_GetLastError() == pdfium.FPDF_ERR_PASSWORD:
+        raise Refused("is locked with a password; save a copy without one and open the copy.")
+    raise Refused(DAMAGED)
 
 
 def _render(document: Any, page: int, max_pixels: int) -> Decoded:
@@ -80,7 +84,7 @@ def _render(document: Any, page: int, max_pixels: int) -> Decoded:
         width_px = round(width_pt * dpi / _POINTS_PER_INCH)
         height_px = round(height_pt * dpi / _POINTS_PER_INCH)
         check_size(width_px, height_px, max_pixels)
-        pixels = _pixels(pdf_page, width_px, height_px)
+        pixels = _pixels(pdf_page, (width_pt, height_pt), (width_px, height_px))
     finally:
         pdf_page.close()
     return Decoded(pixels, len(document), (f"PDF page rendered at {dpi:.0f} dots per inch.",))
@@ -149,11 +153,14 @@ def _check_embedded_jpeg(item: Any) -> None:
     jpeg_layout(content.raw)
 
 
-def _pixels(pdf_page: Any, width_px: int, height_px: int) -> NDArray[np.uint8]:
+def _pixels(
+    pdf_page: Any, size_pt: tuple[float, float], size_px: tuple[int, int]
+) -> NDArray[np.uint8]:
     """PDFium draws into the array itself; the page is stretched to its exact size."""
     import numpy as np
     import pypdfium2.raw as pdfium
 
+    width_px, height_px = size_px
     pixels = np.full((height_px, width_px, 3), 255, dtype=np.uint8)
     bitmap = pdfium.FPDFBitmap_CreateEx(
         width_px,
@@ -164,9 +171,12 @@ def _pixels(pdf_page: Any, width_px: int, height_px: int) -> NDArray[np.uint8]:
     )
     if not bitmap:
         raise MemoryError("PDFium could not make a bitmap")
+    x_scale, y_scale = ((px - 2 * _HAIR_PX) / pt for px, pt in zip(size_px, size_pt, strict=True))
+    matrix = pdfium.FS_MATRIX(x_scale, 0.0, 0.0, y_scale, _HAIR_PX, _HAIR_PX)
+    whole = pdfium.FS_RECTF(0.0, 0.0, float(width_px), float(height_px))
     try:
         flags = pdfium.FPDF_ANNOT | pdfium.FPDF_REVERSE_BYTE_ORDER
-        pdfium.FPDF_RenderPageBitmap(bitmap, pdf_page, 0, 0, width_px, height_px, 0, flags)
+        pdfium.FPDF_RenderPageBitmapWithMatrix(bitmap, pdf_page, matrix, whole, flags)
     finally:
         pdfium.FPDFBitmap_Destroy(bitmap)
     return pixels

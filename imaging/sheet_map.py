@@ -51,11 +51,11 @@ class Coverage:
             return np.zeros(len(points_px), dtype=bool)
         known: BoolArray = np.asarray(np.isfinite(points_px).all(axis=1))
         place = np.floor((np.where(known[:, np.newaxis], points_px, -9.0) + 0.5) / self.cell_px)
-        column, row = place[:, 0].astype(np.int64), place[:, 1].astype(np.int64)
-        inside = known & (row >= 0) & (column >= 0)
-        inside &= (row < cells.shape[0]) & (column < cells.shape[1])
+        # Looked at as floats: a number too large for an integer would come out as any cell.
+        inside = known & (place >= 0).all(axis=1) & (place < cells.shape[::-1]).all(axis=1)
         seen = np.zeros(len(points_px), dtype=bool)
-        seen[inside] = cells[row[inside], column[inside]]
+        column, row = place[inside].astype(np.int64).T
+        seen[inside] = cells[row, column]
         return seen
 
 
@@ -107,6 +107,8 @@ class SheetMap:
     extra: Mapping[str, Any] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
+        if not np.isfinite([self.origin_px, self.x_step_px, self.y_step_px]).all():
+            raise ValueError("the origin and the steps of a SheetMap are finite numbers")
         if abs(np.linalg.det(self._px_from_mm())) < 1e-9:
             raise ValueError("the two grid steps of a SheetMap must not be parallel")
         if np.shape(self.covariance) != (6, 6):

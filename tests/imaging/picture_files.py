@@ -98,7 +98,7 @@ def corner_colours(pixels: Pixels) -> dict[str, tuple[int, int, int]]:
         "middle": pixels[middle_y - 2 : middle_y + 2, middle_x - 2 : middle_x + 2],
     }
     return {
-        name: tuple(int(round(v)) for v in part.reshape(-1, 3).mean(axis=0))  # type: ignore[misc]
+        name: tuple(round(v) for v in part.reshape(-1, 3).mean(axis=0))  # type: ignore[misc]
         for name, part in places.items()
     }
 

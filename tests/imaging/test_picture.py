@@ -325,7 +325,8 @@ def test_a_long_or_unprintable_name_is_shown_within_reason() -> None:
 
 
 def test_bytes_without_a_name_are_called_the_picture() -> None:
-    assert "“The picture”" in str(pytest.raises(PictureError, picture_from_bytes, b"", "").value)
+    with pytest.raises(PictureError, match="“The picture” is empty"):
+        picture_from_bytes(b"", "")
 
 
 def test_no_memory_is_one_sentence(page_file: Path, monkeypatch: pytest.MonkeyPatch) -> None:

@@ -256,7 +256,7 @@ UPRIGHT = {
     5: lambda a: a.swapaxes(0, 1),
     6: lambda a: np.rot90(a, -1),
     7: lambda a: a[::-1, ::-1].swapaxes(0, 1),
-    8: lambda a: np.rot90(a),
+    8: np.rot90,
 }
 """JEITA CP-3451, table 4, tag 274: what the stored rows and columns are of the picture."""
 
@@ -380,4 +380,3 @@ def test_a_png_with_a_remark_opens_and_with_a_damaged_one_is_refused() -> None:
 def test_a_png_that_begins_with_something_else_is_refused() -> None:
     whole = saved(rgb_image(), "PNG")
     assert "is damaged" in refusal(whole[:8] + png_chunk(b"IDAT", bytes(40)) + whole[8:])
-
