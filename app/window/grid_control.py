@@ -13,10 +13,13 @@ from app.window.document import Document
 from app.window.jobs import Jobs
 from app.window.opening import Opening
 from app.window.panels.notices import Notices
-from imaging import sheet_map_from_box
+from app.window.statements import miscount_statement
+from imaging import SheetMap, sheet_map_from_box
 
 _SUBJECT = "grid"
 _SEARCH = "grid search"
+_BY_HAND = "Give the scale by hand"
+_COUNT_ANSWERS = ["Count again", "Take it all the same", "Cancel"]
 _STOPPED = "No grid is known for this picture, so nothing can be measured yet."
 _UNCERTAIN = (
     "The lines found may be 1 mm or 5 mm apart: switch the grid overlay on (G) and count. "
@@ -69,23 +72,34 @@ class GridControl(QObject):
         self._document.edit(replace(reading, sheet_map=sheet_map), "Confirm scale")
 
     def _box_drawn(self, corner: PicturePoint, opposite: PicturePoint) -> None:
-        reading, picture = self._document.reading, self._document.picture
-        squares = self._ask.squares_in_box()
-        if reading is None or picture is None or squares is None:
-            return
-        try:
-            sheet_map = sheet_map_from_box(
-                picture.size_px,
-                (corner.x_px, corner.y_px),
-                (opposite.x_px, opposite.y_px),
-                *squares,
-                # Drawn no more finely than the screen shows the picture.
-                corner_error_px=max(1.0, 1.0 / self._view.zoom()),
-            )
-        except ValueError as error:
-            self._ask.tell("Give the scale by hand", f"No scale was set: {error}.")
-            return
-        self._document.edit(replace(reading, sheet_map=sheet_map), "Give scale by hand")
+        sheet_map = self._map_of_box(corner, opposite)
+        reading = self._document.reading
+        if sheet_map is not None and reading is not None:
+            self._document.edit(replace(reading, sheet_map=sheet_map), "Give scale by hand")
+
+    def _map_of_box(self, corner: PicturePoint, opposite: PicturePoint) -> SheetMap | None:
+        """Ask for the counts until they give squares as high as wide, or nothing is wanted."""
+        picture = self._document.picture
+        while picture is not None and (squares := self._ask.squares_in_box()) is not None:
+            try:
+                sheet_map = sheet_map_from_box(
+                    picture.size_px,
+                    (corner.x_px, corner.y_px),
+                    (opposite.x_px, opposite.y_px),
+                    *squares,
+                    # Drawn no more finely than the screen shows the picture.
+                    corner_error_px=max(1.0, 1.0 / self._view.zoom()),
+                )
+            except ValueError as error:
+                self._ask.tell(_BY_HAND, f"No scale was set: {error}.")
+                return None
+            doubt = miscount_statement(sheet_map)
+            if not doubt:
+                return sheet_map
+            answer = self._ask.choose(_BY_HAND, doubt, _COUNT_ANSWERS)
+            if answer != 0:
+                return sheet_map if answer == 1 else None
+        return None
 
     def _forget(self) -> None:
         self._reason = ""
@@ -102,7 +116,7 @@ class GridControl(QObject):
 
     def _show(self) -> None:
         reading = self._document.reading
-        by_hand = ("Give the scale by hand", self.begin_box)
+        by_hand = (_BY_HAND, self.begin_box)
         if reading is None or self._jobs.is_busy():
             self._notices.take_away(_SUBJECT)
         elif reading.sheet_map is None:

@@ -11,6 +11,8 @@ from app.reading.marks import PicturePoint
 from app.reading.model import Reading
 from imaging.sheet_map import SheetMap
 
+# Paper is ruled within 2 % (EC11, from memory); the rest is for a box drawn by eye.
+_BELIEVABLE_STRETCH_PERCENT = 5.0
 # Half a pen's width (common practice, no source): 8 ms at 25 mm/s.
 _COARSE_SCREEN_PX_MM = 0.2
 _EVIDENCE_WORDS = {
@@ -113,6 +115,19 @@ def coarse_zoom_statement(view_px_per_picture_px: float, sheet_map: SheetMap | N
     return (
         f"One screen pixel is {screen_px_mm:.1f} mm here: zoom in with the wheel, or press 1, "
         "for sharper marks."
+    )
+
+
+def miscount_statement(sheet_map: SheetMap) -> str:
+    """Why the counts of a box are doubtful; empty where its squares are as high as wide."""
+    ratio = sheet_map.x_pitch_px_per_mm / sheet_map.y_pitch_px_per_mm
+    percent = 100.0 * (max(ratio, 1.0 / ratio) - 1.0)
+    if percent <= _BELIEVABLE_STRETCH_PERCENT:
+        return ""
+    wider, high = ("wider", "high") if ratio > 1.0 else ("higher", "wide")
+    return (
+        f"By these counts the squares are {percent:.0f} % {wider} than {high}: "
+        "one of the counts is probably wrong."
     )
 
 

@@ -58,6 +58,11 @@ class SettingField(QWidget):
         for widget in (label, self.combo, self.evidence, self.confirm):
             layout.addWidget(widget)
 
+    def show_nothing(self) -> None:
+        """There is no sheet yet, and so no setting."""
+        self.combo.setCurrentIndex(-1)
+        self.confirm.setVisible(False)
+
     def show_setting(self, setting: Setting | None) -> None:
         """Display a setting; None: there is none of its own."""
         value = None if setting is None else setting.value
@@ -112,6 +117,8 @@ class SettingsStrip(QFrame):
         reading = self._document.reading
         self.setEnabled(reading is not None)
         if reading is None:
+            for field in (self.speed, self.gain, self.chest_gain):
+                field.show_nothing()
             return
         calibration = reading.calibration
         self.speed.show_setting(calibration.paper_speed_mm_per_s)

@@ -12,6 +12,7 @@ from PySide6.QtTest import QTest
 from pytestqt.qtbot import QtBot
 
 from app.window import opening
+from app.window.dialogs.scale import ScaleDialog
 from app.window.main_window import MainWindow
 from imaging import GridNotFound, Picture, SheetMap
 from tests.app.window.bench import (
@@ -69,6 +70,36 @@ def test_without_a_grid_a_box_gives_the_scale(
     assert window._grid_label.text().startswith("Scale given by hand")
     measure(window, "qrs", "II", 300.0, 320.0)
     assert len(reading_of(window).calipers) == 1
+
+
+def test_counts_that_give_oblong_squares_are_asked_about(
+    opened: MainWindow, ask: ScriptedAsk
+) -> None:
+    before = opened.document.reading
+    ask.squares = (10.0, 4.0)
+    ask.answers.append("Cancel")
+    opened.actions_table.action("scale").trigger()
+    drag_picture(opened, (100.0, 100.0), (500.0, 300.0))
+    assert "the squares are 25 % higher than wide" in ask.asked[-1]
+    assert opened.document.reading is before
+    ask.answers.append("Take it all the same")
+    opened.actions_table.action("scale").trigger()
+    drag_picture(opened, (100.0, 100.0), (500.0, 300.0))
+    sheet_map = reading_of(opened).sheet_map
+    assert sheet_map is not None
+    assert sheet_map.source == "reader"
+
+
+def test_squares_that_nobody_counted_give_no_scale(qtbot: QtBot) -> None:
+    dialog = ScaleDialog()
+    qtbot.addWidget(dialog)
+    assert dialog.across.text().strip() == ""
+    assert not dialog.ok.isEnabled()
+    QTest.keyClicks(dialog.across, "52")
+    assert not dialog.ok.isEnabled()
+    QTest.keyClicks(dialog.down, "20")
+    assert dialog.ok.isEnabled()
+    assert (dialog.across.value(), dialog.down.value()) == (52.0, 20.0)
 
 
 def test_no_count_given_changes_nothing(opened: MainWindow, ask: ScriptedAsk, qtbot: QtBot) -> None:

@@ -59,3 +59,8 @@ def test_undo_shows_the_setting_before(opened: MainWindow) -> None:
     assert opened.settings.speed.combo.currentData() == 25.0
     assert opened.settings.speed.evidence.text() == "default, not confirmed"
     assert opened.settings.speed.confirm.isVisible()
+
+
+def test_before_a_picture_no_setting_is_shown(window: MainWindow) -> None:
+    assert window.settings.speed.combo.currentText() == ""
+    assert window.settings.gain.combo.currentText() == ""
