@@ -171,6 +171,16 @@ def test_no_file_is_replaced_unasked(tmp_path: Path) -> None:
         assert image.format == "PNG"
 
 
+def test_nothing_is_drawn_for_a_place_that_is_refused(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setattr("app.chart.annotated.annotate", lambda *_: pytest.fail("drawn in vain"))
+    (tmp_path / "out.png").touch()
+    picture = blank_picture((64, 48))
+    with pytest.raises(FileExistsRefused):
+        write_annotated(picture, reading_of(picture), tmp_path / "out.png")
+
+
 def test_a_file_that_appears_while_we_draw_is_not_replaced(
     tmp_path: Path, monkeypatch: pytest.MonkeyPatch
 ) -> None:

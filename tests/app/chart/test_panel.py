@@ -10,7 +10,7 @@ import pytest
 from app.calculator import Caution, Value, measure_caliper, work_out
 from app.chart.blocks import Block, Words
 from app.chart.panel import Panel
-from app.chart.report import report_of
+from app.chart.report import footnotes, report_of
 from app.chart.wording import DISCLAIMER, caliper_name, value_text
 from app.reading import Calibration, Evidence, Reading, Setting
 from app.version import software_version
@@ -52,6 +52,24 @@ def test_every_value_stands_there_with_its_method_and_cautions() -> None:
         for caution in value.cautions:
             assert caution.text in text
             assert caution.reason in text
+
+
+def test_a_value_names_its_cautions_by_their_numbers() -> None:
+    reading = full_reading()
+    block = panel(reading)
+    values = work_out(reading)
+    notes = footnotes(values)
+    qrs = next(value for value in values if value.key == "qrs")
+    baseline = next(w.baseline for w in block.words if w.text == value_text(qrs))
+    row = [w.text for w in block.words if w.baseline == baseline]
+    numbers = sorted(notes[c.code, c.text][0] for c in qrs.cautions)
+    assert len(numbers) >= 2
+    assert ", ".join(map(str, numbers)) in row
+    # The same number stands before the caution's words.
+    for number in numbers:
+        caution = next(c for n, c in notes.values() if n == number)
+        beside = next(w.baseline for w in block.words if w.text == caution.text)
+        assert str(number) in [w.text for w in block.words if w.baseline == beside]
 
 
 def test_what_it_rests_on_stands_there() -> None:
