@@ -15,14 +15,15 @@ from app.window.canvas.shape import Segment
 Size = tuple[float, float]
 
 _GAP_PX = 4.0
-_INK_COST_PER_PX2 = 0.06
+_INK_COST_PER_PX2 = 0.1
 _OVERHANG_COST_PER_PX = 0.03
 _OVERLAP_COST = 100.0
 _OTHER_BAR_COST = 6.0
 _OTHER_SLOT_COST = 5.0
+_OTHER_WIDER_SLOT_COST = 2.0
 _SHORT_COST = 1.5
-_SHIFT_COST = 5.0
-_STACK_COST = 5.5
+_SHIFT_COST = 7.0
+_STACK_COST = 7.5
 _DROPPED_FROM = 60.0
 
 
@@ -64,8 +65,8 @@ def place_labels(
 ) -> dict[int, LabelPlace]:
     """A place for each caliper's label; a label with no room is left out.
 
-    Each keeps off the others' bars and off the slot outside each bar where the shortest
-    label of that one would stand: in a crowd all become short and none wanders off.
+    Each keeps off the others' bars and off the slots outside each bar where the shorter
+    labels of that one would stand: in a crowd all become short and none wanders off.
 
     Parameters
     ----------
@@ -76,10 +77,7 @@ def place_labels(
     """
     taken: list[Box] = []
     places: dict[int, LabelPlace] = {}
-    kept_clear = {
-        request.caliper_id: (_bar_box(request.bar), _box(request, request.sizes[-1], 0.0, 0.0))
-        for request in requests
-    }
+    kept_clear = {request.caliper_id: _kept_clear(request) for request in requests}
     for request in sorted(requests, key=lambda item: not item.must_show):
         others = [kept for key, kept in kept_clear.items() if key != request.caliper_id]
         best_cost, best_box, best_index = _best(request, taken, others, ink_share)
@@ -108,7 +106,7 @@ _OPTIONS = sorted(
 def _best(
     request: LabelRequest,
     taken: Sequence[Box],
-    others: Sequence[tuple[Box, Box]],
+    others: Sequence[tuple[tuple[float, Box], ...]],
     ink_share: Callable[[Box], float],
 ) -> tuple[float, Box, int]:
     count = 1 if request.must_show else len(request.sizes)
@@ -122,9 +120,7 @@ def _best(
         cost = own_cost + _OVERHANG_COST_PER_PX * _overhang(request, index)
         cost += _INK_COST_PER_PX2 * ink_share(box) * (box[2] - box[0]) * (box[3] - box[1])
         cost += _OVERLAP_COST * sum(_shared(box, other) for other in taken)
-        for bar, slot in others:
-            cost += _OTHER_BAR_COST * (_shared(box, bar) > 0.0)
-            cost += _OTHER_SLOT_COST * (_shared(box, slot) > 0.0)
+        cost += sum(price for other in others for price, kept in other if _shared(box, kept) > 0.0)
         best = min(best, (cost, box, index))
     return best
 
@@ -150,6 +146,13 @@ def _box(request: LabelRequest, size: Size, shift: float, stack: float) -> Box:
         centre_y += shift * (reach + stack * (height + 2.0))
     left, top = centre_x - width / 2.0, centre_y - height / 2.0
     return left, top, left + width, top + height
+
+
+def _kept_clear(request: LabelRequest) -> tuple[tuple[float, Box], ...]:
+    """What a label costs that lies on this one's bar, or where its shorter labels would be."""
+    slots = [_box(request, size, 0.0, 0.0) for size in request.sizes[1:]]
+    prices = (_OTHER_WIDER_SLOT_COST, _OTHER_SLOT_COST)
+    return ((_OTHER_BAR_COST, _bar_box(request.bar)), *zip(prices, slots, strict=False))
 
 
 def _overhang(request: LabelRequest, size_index: int) -> float:
