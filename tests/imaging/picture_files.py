@@ -259,6 +259,21 @@ def srgb_profile() -> bytes:
     return ImageCms.ImageCmsProfile(ImageCms.createProfile("sRGB")).tobytes()
 
 
+@cache
+def linear_grey_profile() -> bytes:
+    """A grey profile whose numbers are light itself (ICC.1:2010, 7.2, 8.3.2, 10.5: gamma 1)."""
+    media_white = b"XYZ \0\0\0\0" + struct.pack(">3i", 63190, 65536, 54061)  # D50, s15Fixed16
+    curve = b"curv\0\0\0\0" + struct.pack(">I", 0)
+    tags = struct.pack(">I", 2)
+    tags += b"wtpt" + struct.pack(">II", 156, len(media_white))
+    tags += b"kTRC" + struct.pack(">II", 156 + len(media_white), len(curve))
+    head = bytearray(128)
+    head[0:4] = struct.pack(">I", 156 + len(media_white) + len(curve))
+    head[8:12], head[12:24], head[36:40] = b"\2\x10\0\0", b"scnrGRAYXYZ ", b"acsp"
+    head[68:80] = media_white[8:]
+    return bytes(head) + tags + media_white + curve
+
+
 # --- one of each
 
 

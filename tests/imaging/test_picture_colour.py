@@ -16,6 +16,7 @@ from tests.imaging.picture_files import (
     grey_image,
     heic,
     jpeg,
+    linear_grey_profile,
     rgb_image,
     saved,
     scene,
@@ -68,6 +69,20 @@ def test_a_profile_for_other_channels_is_ignored_and_said_to_be() -> None:
         picture = picture_from_bytes(jpeg(image, icc_profile=srgb_profile()), "p")
         assert PROFILE_IGNORED in picture.notes
         np.testing.assert_array_equal(picture.pixels, picture_from_bytes(jpeg(image), "p").pixels)
+
+
+@pytest.mark.parametrize("kind", ["jpeg", "png", "tiff"])
+def test_a_grey_profile_is_followed_too(kind: str) -> None:
+    """Half of the light is 188 of 255 in sRGB (IEC 61966-2-1), computed."""
+    half = Image.new("L", (64, 48), 128)
+    data = {
+        "jpeg": jpeg(half, icc_profile=linear_grey_profile()),
+        "png": saved(half, "PNG", icc_profile=linear_grey_profile()),
+        "tiff": saved(half, "TIFF", icc_profile=linear_grey_profile()),
+    }[kind]
+    picture = picture_from_bytes(data, "p")
+    assert corner_colours(picture.pixels)["middle"] == pytest.approx((188, 188, 188), abs=1)
+    assert picture.notes == ()
 
 
 def noise(width_px: int, height_px: int) -> Pixels:

@@ -364,6 +364,17 @@ def test_an_avif_is_not_taken_for_a_heic() -> None:
     assert "is not a picture this program can open" in refusal(brands + bytes(100))
 
 
+def test_boxes_of_a_heic_are_counted_to_the_end() -> None:
+    """ISO/IEC 14496-12, 4.2: a size of 1 is followed by 64 bits, 0 means to the end."""
+    whole = heic()
+    long_box = b"\0\0\0\1free" + (20).to_bytes(8, "big") + bytes(4)
+    open_box = b"\0\0\0\0free and whatever follows"
+    for data in (whole + long_box, whole + open_box, whole + long_box + open_box):
+        np.testing.assert_array_equal(pixels_of(data), pixels_of(whole))
+    assert "is cut short" in refusal(whole + long_box[:-1])
+    assert "is damaged" in refusal(whole + b"\0\0\0\5free")
+
+
 def test_a_png_whose_pixels_were_altered_is_refused() -> None:
     data = bytearray(saved(rgb_image(), "PNG"))
     data[data.find(b"IDAT") + 30] ^= 1

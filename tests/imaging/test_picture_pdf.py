@@ -89,6 +89,19 @@ def test_a_scan_keeps_its_own_pixels_whatever_the_page_s_size_was_rounded_to(see
     np.testing.assert_array_equal(picture_from_bytes(data, "p").pixels, np.rot90(pixels, -turn))
 
 
+def test_an_uncompressed_scan_keeps_its_own_pixels() -> None:
+    pixels = noise(240, 180)
+    data = pdf_of_objects(
+        b"<< /Type /Catalog /Pages 2 0 R >>",
+        b"<< /Type /Pages /Kids [3 0 R] /Count 1 >>",
+        b"<< /Type /Page /Parent 2 0 R /MediaBox [0 0 57.6 43.2] /Contents 4 0 R "
+        b"/Resources << /XObject << /I 5 0 R >> >> >>",
+        pdf_stream(b"57.6 0 0 43.2 0 0 cm /I Do"),
+        image_object(pixels.tobytes(), (240, 180), b""),
+    )
+    np.testing.assert_array_equal(picture_from_bytes(data, "p").pixels, pixels)
+
+
 def test_a_turned_page_keeps_its_own_pixels_too() -> None:
     pixels = noise(240, 180)
     data = scanned_pdf(pixels, (57.6, 43.2), page_entries=b"/Rotate 90")
@@ -229,6 +242,13 @@ def test_a_page_out_of_range_is_refused() -> None:
     data = pdf(rgb_image(), grey_image())
     assert "has 2 pages, so there is no page 3; choose a page from 1 to 2." in refusal(data, 2)
     assert "there is no page 0" in refusal(data, -1)
+
+
+def test_no_memory_for_the_page_is_one_sentence(monkeypatch: pytest.MonkeyPatch) -> None:
+    import pypdfium2.raw
+
+    monkeypatch.setattr(pypdfium2.raw, "FPDFBitmap_CreateEx", lambda *_: None)
+    assert "needs more memory than is free" in refusal(pdf(rgb_image()))
 
 
 # --- threads
