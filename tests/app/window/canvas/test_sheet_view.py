@@ -16,6 +16,7 @@ from app.window.canvas.selection import Part
 from app.window.document import Document
 from tests.app.reading_examples import example_map
 from tests.app.window.canvas.hands import (
+    CONTROL,
     MIDDLE,
     RIGHT,
     SHIFT,
@@ -85,6 +86,21 @@ def test_an_inner_tooth_stretches_the_comb_from_its_start(
     after = caliper_of(document, 3)
     assert after.start == before.start
     assert after.end.x_px == pytest.approx(440.0 + 20.0, abs=0.1)  # tooth 2 of 4 moved by 10
+
+
+def test_the_first_and_the_last_tooth_stretch_the_comb_from_the_other_end(
+    view: SheetView, document: Document
+) -> None:
+    before = caliper_of(document, 3)
+    drag(view, place(view, 200.0, 700.0), place(view, 180.0, 705.0))
+    after = caliper_of(document, 3)
+    assert after.start.x_px == pytest.approx(180.0, abs=ONE_VIEW_PX)
+    assert (after.end, after.teeth) == (before.end, 5)
+    drag(view, place(view, 440.0, 700.0), place(view, 480.0, 695.0))
+    assert caliper_of(document, 3).end.x_px == pytest.approx(480.0, abs=ONE_VIEW_PX)
+    assert caliper_of(document, 3).start == after.start
+    document.undo()
+    assert caliper_of(document, 3) == after
 
 
 def test_dragging_the_bar_moves_the_whole(view: SheetView, document: Document) -> None:
@@ -170,6 +186,20 @@ def test_shift_click_takes_a_second_caliper_in_and_a_drag_moves_both(
     assert caliper_of(document, 2).start.x_px == pytest.approx(720.0)
     document.undo()
     assert document.undo_label() is None
+
+
+@pytest.mark.parametrize("modifier", [SHIFT, CONTROL])
+def test_a_click_with_shift_or_control_takes_in_and_lets_go(
+    view: SheetView, document: Document, modifier: Qt.KeyboardModifier
+) -> None:
+    before = document.reading
+    leg, other = place(view, 560.0, 400.0), place(view, 706.0, 520.0)
+    for point, selected in ((leg, {1}), (other, {1, 2}), (leg, {2}), (other, set())):
+        press(view, point, modifiers=modifier)
+        hover(view, point + QPoint(20, 20))
+        release(view, point + QPoint(20, 20))
+        assert view.selected_ids() == selected
+    assert document.reading is before
 
 
 def test_a_click_on_an_empty_place_lets_go_of_the_selection(view: SheetView, qtbot: QtBot) -> None:
