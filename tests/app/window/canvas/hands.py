@@ -5,8 +5,8 @@ from __future__ import annotations
 from dataclasses import replace
 
 import numpy as np
-from PySide6.QtCore import QPoint, QPointF, Qt
-from PySide6.QtGui import QWheelEvent
+from PySide6.QtCore import QEvent, QPoint, QPointF, Qt
+from PySide6.QtGui import QMouseEvent, QWheelEvent
 from PySide6.QtTest import QTest
 from PySide6.QtWidgets import QApplication
 
@@ -86,9 +86,20 @@ def place(view: SheetView, x_px: float, y_px: float) -> QPoint:
 
 
 def hover(view: SheetView, point: QPoint) -> None:
-    """Move with no button down."""
-    QTest.mouseMove(view.viewport(), point)
-    QApplication.processEvents()
+    """Move to a point of the viewport.
+
+    The event is sent and not the pointer moved: a window system takes its time to tell.
+    """
+    viewport = view.viewport()
+    event = QMouseEvent(
+        QEvent.Type.MouseMove,
+        QPointF(point),
+        QPointF(viewport.mapToGlobal(point)),
+        Qt.MouseButton.NoButton,
+        QApplication.mouseButtons(),
+        NONE,
+    )
+    QApplication.sendEvent(viewport, event)
 
 
 def click(view: SheetView, point: QPoint, button: Qt.MouseButton = LEFT) -> None:

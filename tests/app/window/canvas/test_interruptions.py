@@ -6,8 +6,10 @@ from collections.abc import Callable
 from dataclasses import replace
 
 import pytest
-from PySide6.QtCore import QPoint, Qt
+from PySide6.QtCore import QEvent, QPoint, Qt
+from PySide6.QtGui import QFocusEvent
 from PySide6.QtTest import QTest
+from PySide6.QtWidgets import QApplication
 from pytestqt.qtbot import QtBot
 
 from app.reading import CaliperKind
@@ -179,7 +181,7 @@ def test_a_space_bar_released_in_another_window_is_released(
     view: SheetView, document: Document
 ) -> None:
     QTest.keyPress(view, Qt.Key.Key_Space)
-    view.clearFocus()
+    QApplication.sendEvent(view, QFocusEvent(QEvent.Type.FocusOut))
     drag(view, place(view, 560.0, 400.0), place(view, 600.0, 400.0))
     assert caliper_of(document).end.x_px == pytest.approx(600.0, abs=1.0)
 

@@ -163,6 +163,16 @@ def test_a_double_click_is_not_two_places(view: SheetView, document: Document) -
     assert view.is_placing()
 
 
+def test_a_click_of_a_hand_that_trembles_is_a_click(view: SheetView, document: Document) -> None:
+    view.begin_placing(CaliperKind.TIME, "qrs", "V1")
+    drag(view, place(view, 300.0, 500.0), place(view, 304.0, 502.0))
+    assert placed(document) == ()
+    drag(view, place(view, 340.0, 500.0), place(view, 343.0, 501.0))
+    (caliper,) = placed(document)
+    assert xy(caliper.start) == near(300.0, 500.0)
+    assert xy(caliper.end) == near(343.0, 501.0)  # the last place seen in the loupe counts
+
+
 def test_two_clicks_in_one_column_measure_nothing(view: SheetView, document: Document) -> None:
     view.begin_placing(CaliperKind.TIME, "qrs", "V1")
     click(view, place(view, 300.0, 500.0))
