@@ -17,6 +17,10 @@ from contextlib import suppress
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, NoReturn
 
+# Our matrices are small: a second thread brings nothing, and starting it makes numpy load twice
+# as long. It is read when numpy is loaded.
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
+
 from app.version import software_version
 from imaging.errors import SmallsquareError
 

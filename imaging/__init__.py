@@ -5,9 +5,17 @@ this package costs little and the window appears quickly.
 """
 
 from imaging.errors import GridNotFound, PictureError, SmallsquareError
-from imaging.lattice import find_grid
 from imaging.picture import Picture, open_picture, picture_from_bytes
 from imaging.sheet_map import Coverage, SheetMap, sheet_map_from_box
+
+
+def find_grid(picture: Picture) -> SheetMap | GridNotFound:
+    """Find the millimetre lattice on a flat picture; see `imaging.lattice.find_grid`."""
+    # Loaded when first asked for: a picture is on the screen before that.
+    from imaging.lattice import find_grid as find
+
+    return find(picture)
+
 
 __all__ = [
     "Coverage",

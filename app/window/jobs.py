@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import logging
 from collections.abc import Callable
+from functools import partial
 from typing import Any, TypeVar
 
 from PySide6.QtCore import QObject, QThread, QTimer, Signal
@@ -87,7 +88,10 @@ class Jobs(QObject):
         self._awaited = worker
         self.busy_changed.emit(title, not must_end)
         if delay_ms:
-            QTimer.singleShot(delay_ms, lambda: self._set_off(worker))
+            # Counted from the next turn of the event loop: at the start of the program there
+            # is none yet, and building the window takes its time.
+            later = partial(QTimer.singleShot, delay_ms, lambda: self._set_off(worker))
+            QTimer.singleShot(0, later)
         else:
             worker.start()
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import gc
 import sys
 import threading
 from pathlib import Path
@@ -14,6 +15,8 @@ if TYPE_CHECKING:
     from PySide6.QtWidgets import QApplication
 
     from app.window.main_window import MainWindow
+
+_COLLECT_AFTER_MS = 1500
 
 
 class EarlyPicture:
@@ -44,9 +47,12 @@ class EarlyPicture:
 
 def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWindow]:
     """Make the application and its window, with `path` on its way in."""
+    # Starting makes many objects and hardly any garbage: looking for it costs a twentieth.
+    gc.disable()
     file = None if path is None else Path(path).absolute()
     is_picture = file is not None and not file.name.endswith(SUFFIX)
     early = EarlyPicture(file) if file is not None and is_picture else None
+    from PySide6.QtCore import QTimer
     from PySide6.QtWidgets import QApplication
 
     from app.window import faults
@@ -62,7 +68,14 @@ def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWin
     faults.install_hooks(window.show_fault)
     if file is not None:
         window.opening.open_path(file, None if early is None else early.result)
+    QTimer.singleShot(_COLLECT_AFTER_MS, _collect_again)
     return app, window
+
+
+def _collect_again() -> None:
+    """What is there now stays, so it need not be looked through again and again."""
+    gc.freeze()
+    gc.enable()
 
 
 def run(path: str | None) -> int:

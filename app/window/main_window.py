@@ -73,7 +73,7 @@ class MainWindow(QMainWindow):
         self._lay_out()
         self.actions_table = Actions(self, self.menuBar())
         self.actions_table.menus[MEASURE].addSeparator()
-        self.actions_table.menus[MEASURE].addMenu(self.worksheet.add_menu(self))
+        self.actions_table.menus[MEASURE].addMenu(self.worksheet.lines_menu)
         self._connect()
         self.setAcceptDrops(True)
         self._follow()

@@ -39,7 +39,7 @@ from imaging import (
 from imaging import find_grid as find_grid_on
 
 PASTED_NAME = "Pasted picture"
-_PAINT_FIRST_MS = 40
+_PAINT_FIRST_MS = 100
 _log = logging.getLogger(__name__)
 
 

@@ -41,6 +41,11 @@ class Worksheet(QWidget):
         Something typed or chosen cannot be taken; one sentence.
     refreshed()
         The rows show the present reading.
+
+    Attributes
+    ----------
+    lines_menu : QMenu
+        Every quantity with its leads; picking one adds its line.
     """
 
     row_picked = Signal(object)
@@ -61,6 +66,7 @@ class Worksheet(QWidget):
         self.another = QPushButton("Another beat  (B)")
         self.next = QPushButton("Next line  (N)")
         self.add = QToolButton()
+        self.lines_menu = self._lines_menu()
         self._build()
         self._timer = QTimer(self)
         self._timer.setSingleShot(True)
@@ -94,9 +100,17 @@ class Worksheet(QWidget):
         if field is not None and self.tree.isAncestorOf(field):
             field.clearFocus()
 
-    def add_menu(self, parent: QWidget) -> QMenu:
+    def add_line(self, key: str, lead: str) -> Line:
+        """Add a line (or find it) and show it."""
+        line = self.lines.add(key, lead)
+        self.refresh()
+        self.tree.pick(("line", line.line_id, None))
+        self.line_added.emit(line)
+        return line
+
+    def _lines_menu(self) -> QMenu:
         """A menu of quantities, each with its leads."""
-        menu = QMenu("Add &line", parent)
+        menu = QMenu("Add &line", self)
         for item in QUANTITIES:
             leads = menu.addMenu(item.label)
             for lead in LEADS:
@@ -107,19 +121,11 @@ class Worksheet(QWidget):
                 leads.addAction(action)
         return menu
 
-    def add_line(self, key: str, lead: str) -> Line:
-        """Add a line (or find it) and show it."""
-        line = self.lines.add(key, lead)
-        self.refresh()
-        self.tree.pick(("line", line.line_id, None))
-        self.line_added.emit(line)
-        return line
-
     def _build(self) -> None:
         self.add.setText("Add line ")
         self.add.setToolTip("Measure a quantity in a further lead")
         self.add.setPopupMode(QToolButton.ToolButtonPopupMode.InstantPopup)
-        self.add.setMenu(self.add_menu(self.add))
+        self.add.setMenu(self.lines_menu)
         for button in (self.another, self.next):
             button.setProperty("leading", True)
         buttons = QHBoxLayout()

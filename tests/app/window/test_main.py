@@ -72,3 +72,17 @@ def test_an_error_while_decoding_early_comes_out_where_it_is_waited_for(tmp_path
     early = EarlyPicture(wrong)
     with pytest.raises(PictureError, match=r"notes\.png"):
         early.result()
+
+
+def test_garbage_is_collected_again_once_the_window_is_there(page: Path) -> None:
+    script = """
+import gc, sys
+from PySide6.QtTest import QTest
+from app.window.main import build
+app, window = build(sys.argv[1], sys.argv[:1])
+while not gc.isenabled():
+    QTest.qWait(50)
+print("collecting")
+window.close()
+"""
+    assert run_python(script, str(page)) == "collecting"
