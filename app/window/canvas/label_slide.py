@@ -45,7 +45,11 @@ class Slide:
             box = _stepped(self.label, (along, along * slope))
         else:
             along = _step_along(self.label[1::2], sorted((y1, y2)), room[1::2])
-            box = _stepped(self.label, (along * (x2 - x1) / (y2 - y1), along))
+            across = 0.0
+            if self.label[1] >= max(y1, y2) or self.label[3] <= min(y1, y2):
+                # Past the end of the bar there is room to both sides.
+                across = _step_along(self.label[0::2], self.caliper[0::2], room[0::2])
+            box = _stepped(self.label, (across + along * (x2 - x1) / (y2 - y1), along))
         if self.is_free and not _holds(room, box):
             return self._beside_legs(box, room)
         return box

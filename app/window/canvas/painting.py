@@ -4,8 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 
-from PySide6.QtCore import QLineF, QRectF
-from PySide6.QtGui import QBrush, QColor, QPainter, QPen, QRegion
+from PySide6.QtCore import QLineF, QRectF, Qt
+from PySide6.QtGui import QColor, QPainter, QPen, QRegion
 
 from app.window.canvas import look
 from app.window.canvas.overlay import Drawn
@@ -41,8 +41,9 @@ def _paint_handles(painter: QPainter, shown: Iterable[Drawn]) -> None:
     for item in shown:
         if not item.handles:
             continue
+        # Rings: what is under a mark must stay to be seen.
         painter.setPen(QPen(look.ORANGE, 1.6))
-        painter.setBrush(QBrush(look.ORANGE if item.held_legs else QColor("white")))
+        painter.setBrush(Qt.BrushStyle.NoBrush)
         for place in item.handles:
             painter.drawEllipse(place, radius, radius)
 

@@ -73,6 +73,13 @@ def test_along_an_upright_bar_it_slides_up_and_down() -> None:
     assert slid(upright(500.0, 1100.0)) == pytest.approx((504.0, 672.0, 604.0, 692.0))
 
 
+def test_past_the_end_of_an_upright_bar_it_slides_sideways_over_the_caliper() -> None:
+    below = Slide((-20.0, 410.0, 120.0, 430.0), (60.0, 300.0, 60.0, 400.0), (60, 300, 90, 400))
+    assert slid(below) == pytest.approx((EDGE, 410.0, 148.0, 430.0))
+    beside = Slide((-90.0, 340.0, 50.0, 360.0), (54.0, 300.0, 54.0, 400.0), (54, 300, 90, 400))
+    assert slid(beside) == pytest.approx(beside.label)
+
+
 def test_of_a_caliper_that_is_out_of_view_the_label_stays_where_it_is() -> None:
     assert slid(level(1100.0, 1500.0)) is None
     assert slid(level(300.0, 600.0, y=-300.0)) is None
