@@ -80,12 +80,16 @@ def grid_statement(sheet_map: SheetMap | None) -> str:
         f"{sheet_map.x_pitch_px_per_mm:.2f} × {sheet_map.y_pitch_px_per_mm:.2f} px per small square"
     )
     error_mm = largest_error_mm(sheet_map)
-    error = "" if math.isnan(error_mm) else f", standard error {error_mm:.2g} mm"
+    error = "" if math.isnan(error_mm) else f", standard error {_small_mm(error_mm)}"
     if sheet_map.source == "reader":
         return f"Scale given by hand: {pitch}{error}"
     if not sheet_map.scale_is_certain:
         return f"Grid found, scale NOT certain: {pitch}{error}"
     return f"Grid found: {pitch}{error}"
+
+
+def _small_mm(error_mm: float) -> str:
+    return f"{error_mm:.2g} mm" if error_mm >= 0.001 else "below 0.001 mm"
 
 
 def pointer_statement(point: PicturePoint | None, sheet_map: SheetMap | None) -> str:

@@ -51,6 +51,8 @@ QToolTip {{ background: {PAPER}; color: {INK}; border: 1px solid {EDGE}; padding
 #notice[kind="stop"] QLabel {{ color: {STOP_INK}; }}
 #evidence[confirmed="false"] {{ color: {WARN_INK}; }}
 #evidence[confirmed="true"] {{ color: {QUIET_INK}; }}
+#fold {{ border: none; background: transparent; }}
+#fold:focus {{ border: 1px solid {EDGE_INK}; }}
 #quiet {{ color: {QUIET_INK}; }}
 #detailTitle {{ font-weight: 600; font-size: 12pt; }}
 QTreeView {{ border: 1px solid {EDGE}; }}

@@ -17,6 +17,8 @@ from PySide6.QtWidgets import (
 from app.calculator.display import shown_number
 from app.window.panels.worksheet_rows import Row, shown_unit
 
+_FOLD_PX = 17
+
 
 class FoldLine(QWidget):
     """A short line that unfolds to more."""
@@ -25,7 +27,8 @@ class FoldLine(QWidget):
         super().__init__()
         self.button = QToolButton()
         self.button.setArrowType(Qt.ArrowType.RightArrow)
-        self.button.setAutoRaise(True)
+        self.button.setObjectName("fold")
+        self.button.setFixedSize(_FOLD_PX, _FOLD_PX)
         self.button.setCheckable(True)
         self.button.setAccessibleName(f"More about: {text}")
         self.button.toggled.connect(self._unfold)
@@ -103,6 +106,9 @@ def _below_title(row: Row | None) -> list[QWidget]:
         widgets.append(_words(row.comparison))
     value = row.given
     if value is None:
+        if row.line is not None:
+            places = row.line.quantity
+            widgets.append(_quiet(f"From {places.first_place} to {places.second_place}."))
         return widgets
     if value.refusal:
         widgets.append(_words(value.refusal))

@@ -57,7 +57,7 @@ class Column(IntEnum):
     DIFFERENCE = 5
 
 
-_ROW_HEIGHT_PX = 20
+_ROW_HEIGHT_PX = 19
 _DEPTH_FIRST = {"beat": 0, "line": 1, "value": 1, "free": 1, "group": 2}
 _HEADERS = {
     Column.NAME: ("Line", "What is measured"),

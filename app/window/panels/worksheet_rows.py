@@ -324,7 +324,9 @@ def hand_figure_from_text(text: str, unit: str) -> float | None:
 def _difference_text(comparison: Comparison | None, unit: str) -> str:
     if comparison is None or comparison.difference is None:
         return ""
-    number = f"{comparison.difference:+.{_DECIMALS.get(unit, 0)}f}".replace("-", "−")
+    decimals = _DECIMALS.get(unit, 0)
+    rounded = round(comparison.difference, decimals)
+    number = f"{rounded:+.{decimals}f}".replace("-", "−") if rounded else "0"
     if comparison.within is None:
         return number
     return f"{number} {'within' if comparison.within else 'outside'}"

@@ -50,6 +50,8 @@ def test_the_grid_s_statement_gives_pitch_and_error() -> None:
     assert grid_statement(None) == "No grid yet"
     statement = grid_statement(sheet_map)
     assert statement.startswith("Grid found: 8.00 × 7.92 px per small square, standard error ")
+    sharp = replace(sheet_map, covariance=((0.0,) * 6,) * 6, scatter_mm=0.0002)
+    assert grid_statement(sharp).endswith("standard error below 0.001 mm")
     uncertain = replace(sheet_map, scale_is_certain=False)
     assert grid_statement(uncertain).startswith("Grid found, scale NOT certain: ")
     by_hand = sheet_map_from_box((1200, 900), (100.0, 100.0), (500.0, 300.0), 10.0, 5.0)

@@ -6,7 +6,7 @@ import pytest
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QFontMetrics
 from PySide6.QtTest import QTest
-from PySide6.QtWidgets import QApplication, QComboBox, QLineEdit
+from PySide6.QtWidgets import QApplication, QComboBox, QLabel, QLineEdit
 from pytestqt.qtbot import QtBot
 
 from app.reading import HandFigure
@@ -124,6 +124,12 @@ def test_cautions_stand_below_the_value_picked_and_unfold(opened: MainWindow) ->
     line.button.click()
     assert line.more.isVisible()
     assert "Source:" in line.more.text()
+
+
+def test_a_line_without_marks_says_from_where_to_where(opened: MainWindow) -> None:
+    pick_line(opened, "qt", "II")
+    words = [label.text() for label in opened.worksheet.cautions.findChildren(QLabel)]
+    assert any(text.endswith("to where the T wave ends.") for text in words)
 
 
 def test_names_are_kept_in_the_reading(opened: MainWindow) -> None:

@@ -139,3 +139,17 @@ def test_an_uncertain_scale_is_marked_as_an_unconfirmed_setting_is() -> None:
     qrs = rows_of(replace(reading, sheet_map=uncertain))["QRS II"]
     assert qrs.value.endswith("?")
     assert qrs.children[0].value.endswith("?")
+
+
+@pytest.mark.parametrize(
+    ("figure_ms", "difference"),
+    [(98.0, "+2 within"), (100.2, "0 within"), (99.8, "0 within"), (150.0, "−50 outside")],
+)
+def test_a_difference_is_rounded_and_has_a_sign_where_it_is_one(
+    figure_ms: float, difference: str
+) -> None:
+    ends = PicturePoint(100.0, 200.0), PicturePoint(120.0, 200.0)
+    qrs = Caliper(1, CaliperKind.TIME, *ends, "qrs", "II", 1)
+    figures = (HandFigure("qrs", figure_ms, "II"),)
+    reading = replace(example_reading(), calipers=(qrs,), hand_figures=figures)
+    assert rows_of(reading)["QRS II"].difference == difference
