@@ -20,6 +20,7 @@ from dataclasses import asdict, dataclass, replace
 from pathlib import Path
 
 import numpy as np
+from numpy.typing import NDArray
 from PySide6.QtCore import QEvent, QObject, Qt
 from PySide6.QtGui import QImage, QPixmap
 from PySide6.QtWidgets import QApplication, QFrame, QGraphicsScene, QGraphicsView
@@ -123,12 +124,12 @@ def _pan_here() -> tuple[Panning, Panning]:
     application = QApplication(sys.argv[:1])
     if application.platformName() != "xcb":
         raise RuntimeError("this measures on a real X server")
-    document = _marked_document()
-    sheet = SheetView(document)
+    picture = _ruled_page()
+    sheet = SheetView(_marked_document(picture))
     sheet.resize(*VIEW_PX)
     sheet.zoom_actual()
     sheet.select([1])
-    bare = _bare_view(document.picture.pixels)
+    bare = _bare_view(picture.pixels)
     rates: dict[bool, list[tuple[float, float]]] = {False: [], True: []}
     for _ in range(REPEATS + 1):
         for whole, found in rates.items():
@@ -180,7 +181,7 @@ def _settle(application: QApplication) -> None:
         application.processEvents()
 
 
-def _bare_view(pixels: np.ndarray) -> QGraphicsView:
+def _bare_view(pixels: NDArray[np.uint8]) -> QGraphicsView:
     height, width = pixels.shape[:2]
     image = QImage(pixels.data, width, height, pixels.strides[0], QImage.Format.Format_RGB888)
     view = QGraphicsView()
@@ -194,8 +195,8 @@ def _bare_view(pixels: np.ndarray) -> QGraphicsView:
     return view
 
 
-def _marked_document() -> Document:
-    """A ruled page with a wavy pen line and 24 calipers where the panning comes by."""
+def _ruled_page() -> Picture:
+    """A grid with wavy pen lines."""
     pixels = np.full((PAGE_PX[1], PAGE_PX[0], 3), (255, 248, 246), dtype=np.uint8)
     pixels[::PX_PER_MM] = pixels[:, ::PX_PER_MM] = (245, 190, 190)
     columns = np.arange(PAGE_PX[0])
@@ -203,7 +204,11 @@ def _marked_document() -> Document:
         rows = (baseline + 60.0 * np.sin(columns / 40.0)).astype(int)
         for thickness in range(4):
             pixels[rows + thickness, columns] = 20
-    picture = Picture(pixels, "page.png", None, "00" * 32)
+    return Picture(pixels, "page.png", None, "00" * 32)
+
+
+def _marked_document(picture: Picture) -> Document:
+    """24 calipers where the panning comes by."""
     reading = new_reading(picture, now="2026-01-02T03:04:05+00:00", software_version="bench")
     reading = replace(reading, sheet_map=example_map(PAGE_PX, float(PX_PER_MM)))
     document = Document()
@@ -212,11 +217,10 @@ def _marked_document() -> Document:
 
 
 def _with_calipers(reading: Reading) -> Reading:
+    kinds = (CaliperKind.TIME, CaliperKind.TIME, CaliperKind.HEIGHT, CaliperKind.COMB)
     for number in range(24):
         x, y = 250.0 + 400.0 * (number % 8), 300.0 + 400.0 * (number // 8)
-        kind = (CaliperKind.TIME, CaliperKind.TIME, CaliperKind.HEIGHT, CaliperKind.COMB)[
-            number % 4
-        ]
+        kind = kinds[number % 4]
         end = PicturePoint(x + (20.0 if kind is CaliperKind.HEIGHT else 240.0), y - 90.0)
         teeth = 5 if kind is CaliperKind.COMB else 2
         caliper = Caliper(number + 1, kind, PicturePoint(x, y), end, lead="II", teeth=teeth)
