@@ -2,10 +2,177 @@
 
 from __future__ import annotations
 
+import logging
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from imaging.choose import Choice, choose_waves
 from imaging.errors import GridNotFound
+from imaging.flatness import bend_of
+from imaging.ink import GridInk, grid_ink
+from imaging.lock_in import Tiles
+from imaging.periods import HIGHEST_CYCLES_PER_PX
+from imaging.phase_fit import LineFit, fit_lines
 from imaging.picture import Picture
-from imaging.sheet_map import SheetMap
+from imaging.seen import Comb, seen_cells
+from imaging.sheet_map import Coverage, SheetMap
+
+FloatArray = NDArray[np.float64]
+
+_log = logging.getLogger(__name__)
+
+SMALLEST_SIDE_PX = 60
+_SPECTRUM_PIXELS = 4_200_000
+_TILE_MM = 15.0
+_SMALL_TILE_MM = 10.0
+_MOST_STRAY = 0.15
+# The bars of a span of 5 to 50 mm: half a millisecond, or one on a coarse scan, at 25 mm/s.
+_BAR_MM = 0.0125
+_COARSE_BAR_MM = 0.025
+_COARSE_PX_PER_MM = 5.0
+
+TOO_SMALL = GridNotFound(
+    "The picture shows too few squares to place a grid; use a picture of at least 30 by 30 mm "
+    "of the paper.",
+    "too_small",
+)
+NOT_FLAT = GridNotFound(
+    "The grid lines bend or spread across the picture, so one scale cannot hold for all of "
+    "it; lay the page flat and scan it.",
+    "not_flat",
+)
 
 
 def find_grid(picture: Picture) -> SheetMap | GridNotFound:
-    raise NotImplementedError
+    """Find the millimetre grid of a flat scan.
+
+    Parameters
+    ----------
+    picture : Picture
+        Of a page turned by at most 12 degrees from upright or from a quarter turn.
+
+    Returns
+    -------
+    SheetMap or GridNotFound
+        The map's +x is the picture's own right and +y its down: which way up the paper is,
+        or whether it is mirrored, cannot be told from its grid, so ``turn_deg`` is 0.
+
+    Notes
+    -----
+    The lock-in of Takeda et al. 1982 in tiles, with an affine phase through all of them.
+    May be called on any thread; nothing is kept between calls.
+    """
+    if min(picture.size_px) < SMALLEST_SIDE_PX:
+        return TOO_SMALL
+    ink = grid_ink(picture.pixels)
+    times = int(np.ceil(np.sqrt(ink.darkness.size / _SPECTRUM_PIXELS)))
+    coarse = ink.binned(times)
+    choice = choose_waves(coarse.darkness, coarse.bin_px)
+    if isinstance(choice, GridNotFound):
+        return choice
+    fits = _fit_both(ink, choice, times)
+    if isinstance(fits, GridNotFound):
+        return fits
+    return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Fits:
+    """Upright and level lines placed on the working plane."""
+
+    both: tuple[LineFit, LineFit]
+    scatter_mm: float
+
+
+def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
+    waves = [np.array(wave) / times for wave in (choice.upright, choice.level)]
+    px_per_mm = 1.0 / max(np.hypot(*wave) for wave in waves)
+    smallest_mm = min(ink.darkness.shape) / px_per_mm
+    if smallest_mm < 1.5 * _SMALL_TILE_MM:
+        return TOO_SMALL
+    tile_mm = _TILE_MM if smallest_mm >= 3.0 * _TILE_MM else _SMALL_TILE_MM
+    side_px = round(tile_mm * px_per_mm)
+    tiles = Tiles.over(ink.darkness.shape, side_px, side_px // 2)
+    highest = 5.0 * HIGHEST_CYCLES_PER_PX * px_per_mm
+    fifths = np.array([number for number in choice.fifths if number <= highest])
+    fits = [fit_lines(ink.darkness, wave, fifths, choice.first, tiles) for wave in waves]
+    bar_mm = _BAR_MM if px_per_mm * ink.bin_px >= _COARSE_PX_PER_MM else _COARSE_BAR_MM
+    bends = [bend_of(fit.offsets_mm, tile_mm / 2.0) for fit in fits]
+    _log.debug("stray %.3f %.3f, bends %s", fits[0].stray, fits[1].stray, bends)
+    if max(fit.stray for fit in fits) > _MOST_STRAY:
+        return NOT_FLAT
+    if max(bend.span_mm for bend in bends) > bar_mm:
+        return NOT_FLAT
+    return _Fits((fits[0], fits[1]), max(bend.scatter_mm for bend in bends))
+
+
+def _sheet_map(
+    size_px: tuple[int, int], bin_px: int, coarse: GridInk, fits: _Fits, choice: Choice
+) -> SheetMap:
+    """Turn two phase planes into origin and steps, and look where the grid is."""
+    rows = np.zeros((2, 3))
+    covariance = np.zeros((6, 6))
+    for axis, fit in enumerate(fits.both):
+        # Working pixel p lies at bin * p + (bin - 1) / 2 in the picture.
+        change = np.diag([1.0 / bin_px, 1.0 / bin_px, 1.0])
+        change[2, :2] = -0.5 * (bin_px - 1) / bin_px
+        rows[axis] = change @ [*fit.wave, fit.start_mm]
+        covariance[3 * axis : 3 * axis + 3, 3 * axis : 3 * axis + 3] = (
+            change @ fit.covariance @ change.T
+        )
+    rows = _origin_on_picture(rows, size_px)
+    steps = np.linalg.inv(rows[:, :2])
+    origin = -steps @ rows[:, 2]
+    jacobian = _jacobian(rows, steps, origin)
+    in_px = jacobian @ covariance @ jacobian.T
+    return SheetMap(
+        picture_size_px=size_px,
+        origin_px=(float(origin[0]), float(origin[1])),
+        x_step_px=(float(steps[0, 0]), float(steps[1, 0])),
+        y_step_px=(float(steps[0, 1]), float(steps[1, 1])),
+        covariance=tuple(tuple(float(number) for number in row) for row in in_px),
+        scatter_mm=fits.scatter_mm,
+        coverage=_coverage(coarse, bin_px, fits, choice),
+        scale_is_certain=choice.certain,
+        evidence=choice.evidence,
+    )
+
+
+def _origin_on_picture(rows: FloatArray, size_px: tuple[int, int]) -> FloatArray:
+    """Shift by whole large squares so that the origin lies near the picture's first corner."""
+    near_px = np.array([*(0.1 * np.array(size_px)), 1.0])
+    shifted = rows.copy()
+    shifted[:, 2] -= 5.0 * np.round(rows @ near_px / 5.0)
+    return shifted
+
+
+def _jacobian(rows: FloatArray, steps: FloatArray, origin: FloatArray) -> FloatArray:
+    """Of (origin, x_step, y_step) in the two rows (wave x, wave y, start), shape (6, 6)."""
+    jacobian = np.zeros((6, 6))
+    for axis in range(2):
+        for part in range(3):
+            change = np.zeros((2, 3))
+            change[axis, part] = 1.0
+            # d(M^-1) = -M^-1 dM M^-1, and M origin + start = 0.
+            moved = -steps @ change[:, :2] @ steps
+            shift = -steps @ (change[:, :2] @ origin + change[:, 2])
+            jacobian[:, 3 * axis + part] = [*shift, *moved[:, 0], *moved[:, 1]]
+    return jacobian
+
+
+def _coverage(coarse: GridInk, bin_px: int, fits: _Fits, choice: Choice) -> Coverage:
+    times = coarse.bin_px // bin_px
+    combs = []
+    for fit in fits.both:
+        wave = fit.wave * times
+        start_mm = fit.start_mm + float(fit.wave.sum()) * (times - 1) / 2.0
+        highest = 5.0 * HIGHEST_CYCLES_PER_PX / float(np.hypot(*wave))
+        kept = np.array(choice.fifths[: len(fit.amplitudes)]) <= highest
+        fifths = np.array(choice.fifths[: len(fit.amplitudes)])[kept] / 5.0
+        turned = fit.amplitudes[kept] * np.exp(2j * np.pi * fifths * start_mm)
+        combs.append(Comb(np.outer(fifths, wave), turned))
+    px_per_mm = 1.0 / float(np.hypot(*fits.both[0].wave)) / times
+    cells, cell_px = seen_cells(coarse.darkness, (combs[0], combs[1]), 5.0 * px_per_mm)
+    return Coverage.from_cells(cells, float(cell_px * coarse.bin_px))

@@ -1,0 +1,200 @@
+"""Choose the waves of one small square, or say why there are none."""
+
+from __future__ import annotations
+
+import logging
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from imaging.errors import GridNotFound
+from imaging.lock_in import Tiles, lock_in
+from imaging.periods import COARSEST_PX_PER_MM, Fifths, Pair, fifths_of, pairs_of
+from imaging.profiles import Profiles, profiles_of
+from imaging.ruling import Ruling, ruling_of
+from imaging.spectrum import waves_of
+
+FloatPlane = NDArray[np.float32]
+
+_log = logging.getLogger(__name__)
+
+_WEAKEST_SHARE = 0.02
+_LEAST_SHARE = 0.015
+_DOTS_SHARE = 0.45
+_THIN_IN_OTHER = 1.15
+_LEAST_SHARE_OF_OTHER = 0.004
+_FEWEST_SQUARES_OF_1_MM = 55.0
+_MOST_PAIRS = 60
+
+NO_LINES = GridNotFound(
+    "No grid of evenly spaced lines was found; check that the picture shows ECG paper, and "
+    "scan it in colour or grey at 150 dots per inch or more.",
+    "no_lines",
+)
+ONE_DIRECTION = GridNotFound(
+    "Evenly spaced lines were found in one direction only; scan the page so that both the "
+    "upright and the level lines of the grid are visible.",
+    "one_direction",
+)
+NOT_A_MILLIMETRE_GRID = GridNotFound(
+    "The lines found are not ruled like ECG paper (squares with every fifth line bold); give "
+    "the scale by hand if this is an ECG.",
+    "not_a_millimetre_grid",
+)
+TOO_COARSE = GridNotFound(
+    "The small squares are fewer than three pixels wide; scan the page again at 150 dots per "
+    "inch or more.",
+    "too_coarse",
+)
+
+
+@dataclass(frozen=True, slots=True)
+class Choice:
+    """Which waves are the grid's.
+
+    Attributes
+    ----------
+    upright, level : (float, float)
+        Cycles per pixel of the plane, one cycle to a small square.
+    fifths : tuple of int
+        Waves the page has, in fifths of a square's.
+    first : int
+        The strongest of them.
+    certain : bool
+        Thin and bold lines were told apart.
+    evidence : tuple of str
+        What that rests on.
+    """
+
+    upright: tuple[float, float]
+    level: tuple[float, float]
+    fifths: tuple[int, ...]
+    first: int
+    certain: bool
+    evidence: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Candidate:
+    pair: Pair
+    upright: Fifths
+    level: Fifths
+
+    @property
+    def clear(self) -> float:
+        return min(self.upright.bold_clear, self.level.bold_clear)
+
+
+def choose_waves(plane: FloatPlane, bin_px: int) -> Choice | GridNotFound:
+    """Look for the grid's waves on a plane of darkness.
+
+    Parameters
+    ----------
+    plane : ndarray of float32, shape (rows, columns)
+    bin_px : int
+        Picture pixels on the side of one pixel of the plane.
+    """
+    upright, level, skew_rad = waves_of(plane)
+    if not len(upright.waves) and not len(level.waves):
+        return NO_LINES
+    if not len(upright.waves) or not len(level.waves):
+        return ONE_DIRECTION
+    pairs = pairs_of(upright, level, plane.shape)
+    strongest = sorted(pairs, key=lambda pair: -pair.power)[:_MOST_PAIRS]
+    pairs = [pair for pair in pairs if pair in strongest]
+    profiles = profiles_of(plane, skew_rad)
+    choice = _with_bold(plane, bin_px, pairs, profiles)
+    return choice if choice is not None else _with_one_spacing(plane, bin_px, pairs, profiles)
+
+
+def _with_bold(
+    plane: FloatPlane, bin_px: int, pairs: list[Pair], profiles: tuple[Profiles, Profiles]
+) -> Choice | GridNotFound | None:
+    """The strongest pair that shows thin lines with every fifth bold; None without any."""
+    accepted = []
+    for pair in pairs:
+        found = [fifths_of(part, wave) for part, wave in zip(profiles, pair.lengths, strict=True)]
+        candidate = _Candidate(pair, *found)
+        if _is_ecg(candidate) and not _is_dots(plane, pair):
+            accepted.append(candidate)
+    if not accepted:
+        return None
+    best = max(accepted, key=lambda candidate: candidate.pair.power)
+    _log.debug("thin and bold lines: %s", best)
+    if bin_px / max(best.pair.lengths) < COARSEST_PX_PER_MM:
+        return TOO_COARSE
+    return Choice(
+        best.pair.upright,
+        best.pair.level,
+        tuple(range(1, 16)),
+        5,
+        True,
+        ("Every fifth line is bolder than the four between: 1 mm and 5 mm are told apart.",),
+    )
+
+
+def _is_ecg(candidate: _Candidate) -> bool:
+    """Both families show thin and bold lines, or one does and the other agrees."""
+    both = (candidate.upright, candidate.level)
+    if all(family.is_ecg for family in both):
+        return True
+    if not any(family.is_ecg for family in both):
+        return False
+    other = candidate.level if candidate.upright.is_ecg else candidate.upright
+    thin = other.thin_over_bold > _THIN_IN_OTHER
+    return other.seen and thin and other.share > _LEAST_SHARE_OF_OTHER
+
+
+def _is_dots(plane: FloatPlane, pair: Pair) -> bool:
+    """Whether the 'thin lines' are dots along lines five times as far apart.
+
+    Lines keep their strength all along; dots only stand on the lines of the other family,
+    so their wave comes and goes with it, which is a wave at the sum of both.
+    """
+    for along, across in ((pair.upright, pair.level), (pair.level, pair.upright)):
+        lines = np.array(along)
+        waves = np.stack([lines, lines + np.array(across) / 5.0, lines - np.array(across) / 5.0])
+        side = min(plane.shape)
+        tiles = Tiles.over(plane.shape, side, max(1, side // 2))
+        strength = np.sqrt((np.abs(lock_in(plane, waves, tiles)) ** 2).mean(axis=(0, 1)))
+        if min(strength[1], strength[2]) > _DOTS_SHARE * strength[0]:
+            return True
+    return False
+
+
+def _with_one_spacing(
+    plane: FloatPlane, bin_px: int, pairs: list[Pair], profiles: tuple[Profiles, Profiles]
+) -> Choice | GridNotFound:
+    """The longest pair that shows plain lines of one spacing both ways."""
+    if not pairs:
+        return NOT_A_MILLIMETRE_GRID
+    weakest = _WEAKEST_SHARE * max(pair.power for pair in pairs)
+    for pair in pairs:
+        both = [ruling_of(part, wave) for part, wave in zip(profiles, pair.lengths, strict=True)]
+        plain = all(rule.seen and rule.is_lines and rule.share > _LEAST_SHARE for rule in both)
+        if pair.power < weakest or not plain:
+            continue
+        _log.debug("one spacing: %s %s", pair, both)
+        return _assumed(plane, bin_px, pair, both)
+    return NOT_A_MILLIMETRE_GRID
+
+
+def _assumed(
+    plane: FloatPlane, bin_px: int, pair: Pair, both: list[Ruling]
+) -> Choice | GridNotFound:
+    """Take one spacing as 1 mm or 5 mm by how many squares the picture then has."""
+    lines = {rule.lines_per_cycle for rule in both}
+    if lines - {1, 5}:
+        return NOT_A_MILLIMETRE_GRID
+    across = max(plane.shape) * max(pair.lengths)
+    if 5 in lines or across < _FEWEST_SQUARES_OF_1_MM:
+        scale, fifths, first = 5.0, tuple(range(1, 16)), 1
+        taken = "Only one line spacing is clear; it is taken as 5 mm, the large squares."
+    else:
+        scale, fifths, first = 1.0, (5, 10, 15), 5
+        taken = "Only one line spacing is clear; it is taken as 1 mm, the small squares."
+    waves = [(wave[0] * scale, wave[1] * scale) for wave in (pair.upright, pair.level)]
+    if bin_px / max(np.hypot(*waves[0]), np.hypot(*waves[1])) < COARSEST_PX_PER_MM:
+        return TOO_COARSE
+    return Choice(waves[0], waves[1], fifths, first, False, (taken,))
