@@ -156,6 +156,15 @@ class SheetMap:
         per_axis = self._axis_errors_mm(weights)
         return np.asarray(np.hypot(per_axis[:, 0], per_axis[:, 1]))
 
+    def largest_standard_error_mm(self) -> float | None:
+        """The largest one-sigma error of a point where the grid was seen; None if nowhere."""
+        rows, columns = np.nonzero(self.coverage.cells())
+        if rows.size == 0:
+            return None
+        centres_px = (np.column_stack([columns, rows]) + 0.5) * self.coverage.cell_px - 0.5
+        last_px = np.array(self.picture_size_px, dtype=np.float64) - 1.0
+        return float(np.max(self.standard_error_mm(np.minimum(centres_px, last_px))))
+
     def span_standard_error_mm(self, start_px: FloatArray, end_px: FloatArray) -> FloatArray:
         """One sigma of ``end - start`` along x and y, (N, 2) and (N, 2) -> (N, 2).
 

@@ -1,6 +1,6 @@
 """Knowledge points one way, and no Qt is loaded below the window.
 
-imaging  <-  app.reading  <-  app.calculator  <-  app.chart  <-  app.window
+imaging  <-  app.reading  <-  app.calculator, app.drawing  <-  app.chart  <-  app.window
 """
 
 from __future__ import annotations
@@ -18,6 +18,7 @@ WITHOUT_QT = (
     "imaging",
     "app.reading",
     "app.calculator",
+    "app.drawing",
     "app.chart",
     "app.command_line",
     "app.screen_check",
@@ -59,9 +60,15 @@ def test_the_contracts_name_every_part_below_the_window() -> None:
         c for c in contracts()["contracts"] if "PySide6" in c.get("forbidden_modules", [])
     ]
     without_qt = {module for contract in forbidding for module in contract["source_modules"]}
-    assert without_qt == {"imaging", "app.reading", "app.calculator", "app.chart"}
+    assert without_qt == {"imaging", "app.reading", "app.calculator", "app.drawing", "app.chart"}
     (layers,) = [c["layers"] for c in contracts()["contracts"] if c["type"] == "layers"]
-    assert layers == ["app.window", "app.chart", "app.calculator", "app.reading", "imaging"]
+    assert layers == [
+        "app.window",
+        "app.chart",
+        "app.drawing | app.calculator",
+        "app.reading",
+        "imaging",
+    ]
 
 
 @pytest.mark.parametrize(
@@ -75,7 +82,15 @@ def test_the_contracts_name_every_part_below_the_window() -> None:
     ],
 )
 def test_a_violation_is_found(tmp_path: Path, module: str, line: str) -> None:
-    parts = ("imaging", "app", "app/reading", "app/calculator", "app/chart", "app/window")
+    parts = (
+        "imaging",
+        "app",
+        "app/reading",
+        "app/calculator",
+        "app/drawing",
+        "app/chart",
+        "app/window",
+    )
     for part in parts:
         (tmp_path / part).mkdir()
         (tmp_path / part / "__init__.py").touch()

@@ -10,10 +10,9 @@ from PIL import Image, ImageDraw
 from PIL.PngImagePlugin import PngInfo
 
 from app.calculator import Value
-from app.chart.caliper_lines import Frame
+from app.chart.caliper_lines import mark_ticks
 from app.chart.errors import PictureDiffers
 from app.chart.fonts import Colour, Face, face
-from app.chart.ink import Ink
 from app.chart.panel import PAPER, Panel
 from app.chart.placing import Label, PlacedCaliper, place_calipers
 from app.chart.report import Report, report_of
@@ -28,6 +27,8 @@ from app.chart.wording import (
     short_value_text,
     value_text,
 )
+from app.drawing.frame import SheetFrame, frame_of
+from app.drawing.ink_map import InkMap
 from app.reading import Caliper, Reading, quantity
 from app.reading.file_format import write_whole
 from app.version import software_version
@@ -141,7 +142,7 @@ def _letter_px(width_px: int, height_px: int) -> int:
     )
 
 
-def _label_face(frame: Frame, letter_px: int) -> Face:
+def _label_face(frame: SheetFrame, letter_px: int) -> Face:
     """Letters of the labels: as high as a printed lead name, within what can be read."""
     wanted = 2.3 * frame.pitch_px_per_mm
     return face(round(max(10.0, 0.62 * letter_px, min(wanted, 0.9 * letter_px))))
@@ -155,7 +156,7 @@ def _placed(picture: Picture, report: Report, letter_px: int) -> list[PlacedCali
     calipers = report.reading.calipers
     if not calipers:
         return []
-    frame = Frame.of(report.reading)
+    frame = frame_of(report.reading)
     letters = _label_face(frame, letter_px)
     margin_x, margin_y = _plate_margins(letters)
 
@@ -170,7 +171,7 @@ def _placed(picture: Picture, report: Report, letter_px: int) -> list[PlacedCali
             bar_px = abs(caliper.end.x_px - caliper.start.x_px)
             said = [text for text in said if plate_size(text)[0] < bar_px] or said[-1:]
         texts[caliper.caliper_id] = said
-    ink = Ink(picture.pixels)
+    ink = InkMap(picture.pixels)
     return place_calipers(calipers, texts, frame, ink, picture.size_px, plate_size)
 
 
@@ -199,10 +200,11 @@ def _draw_calipers(
     """Every rim first, so that none lies over another caliper's line; the labels last."""
     stroke_px = max(1.2, letter_px / 13.0)
     size_px = reading.picture.size_px
+    frame = frame_of(reading)
     segments = [
         segment
         for item in placed
-        for segment in (*item.lines.legs, item.lines.bar, *item.lines.ticks)
+        for segment in (*item.lines.legs, item.lines.bar, *mark_ticks(item.caliper, frame))
     ]
     for segment in segments:
         draw_stroke(image, segment, stroke_px * 2.6, _RIM, opacity=0.4, within_px=size_px)
@@ -211,7 +213,7 @@ def _draw_calipers(
     for item in placed:
         if item.label is not None and item.label.leader is not None:
             draw_stroke(image, item.label.leader, stroke_px * 0.7, _TEAL, within_px=size_px)
-    letters = _label_face(Frame.of(reading), letter_px)
+    letters = _label_face(frame, letter_px)
     draw = ImageDraw.Draw(image)
     for item in placed:
         if item.label is not None:

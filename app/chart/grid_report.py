@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-from app.chart.wording import largest_error_mm
 from imaging.sheet_map import SheetMap
 
 
@@ -14,7 +13,7 @@ def grid_document(sheet_map: SheetMap) -> dict[str, Any]:
         "source": sheet_map.source,
         "x_pitch_px_per_mm": sheet_map.x_pitch_px_per_mm,
         "y_pitch_px_per_mm": sheet_map.y_pitch_px_per_mm,
-        "largest_standard_error_mm": largest_error_mm(sheet_map),
+        "largest_standard_error_mm": sheet_map.largest_standard_error_mm(),
         "scale_is_certain": sheet_map.scale_is_certain,
         "turn_deg": sheet_map.turn_deg,
         "mirrored": sheet_map.mirrored,

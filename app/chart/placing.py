@@ -8,9 +8,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from app.chart.caliper_lines import CaliperLines, Frame, Lane, box_of, caliper_lines, lanes_of
-from app.chart.ink import Box, Ink
-from app.chart.strokes import Segment
+from app.chart.caliper_lines import box_of, lanes_of
+from app.drawing.frame import SheetFrame
+from app.drawing.ink_map import Box, InkMap
+from app.drawing.shape import CaliperShape, Lane, Segment, caliper_shape
 from app.reading import Caliper
 
 Size = tuple[float, float]
@@ -52,15 +53,15 @@ class PlacedCaliper:
     """A caliper with its lines, and its label where there was room for one."""
 
     caliper: Caliper
-    lines: CaliperLines
+    lines: CaliperShape
     label: Label | None
 
 
 def place_calipers(
     calipers: Sequence[Caliper],
     texts: Mapping[int, Sequence[str]],
-    frame: Frame,
-    ink: Ink,
+    frame: SheetFrame,
+    ink: InkMap,
     size_px: tuple[int, int],
     plate_size: Callable[[str], Size],
 ) -> list[PlacedCaliper]:
@@ -71,8 +72,8 @@ def place_calipers(
     calipers : sequence of Caliper
     texts : mapping
         For each caliper id its label's words, the fullest first, the bare number last.
-    frame : Frame
-    ink : Ink
+    frame : SheetFrame
+    ink : InkMap
         Of the picture.
     size_px : (int, int)
         Of the picture; no label leaves it.
@@ -93,7 +94,7 @@ class _Room:
     """What is taken on the picture so far."""
 
     def __init__(
-        self, calipers: Sequence[Caliper], frame: Frame, ink: Ink, size_px: tuple[int, int]
+        self, calipers: Sequence[Caliper], frame: SheetFrame, ink: InkMap, size_px: tuple[int, int]
     ) -> None:
         self._frame, self._ink, self._size_px = frame, ink, size_px
         self._labels: list[Box] = []
@@ -117,7 +118,7 @@ class _Room:
         """The cheapest lane and label; without any room the cheapest lane and no label."""
         lanes = []
         for number, lane in enumerate(lanes_of(caliper)):
-            lines = caliper_lines(caliper, self._frame, lane)
+            lines = caliper_shape(caliper, self._frame, lane)
             lanes.append((self._lane_cost(lines, lane, lanes_of(caliper)[0]), number, lines))
         lanes.sort(key=lambda item: item[:2])
         best_cost, best = math.inf, PlacedCaliper(caliper, lanes[0][2], None)
@@ -135,7 +136,7 @@ class _Room:
                     )
         return best
 
-    def _lane_cost(self, lines: CaliperLines, lane: Lane, preferred: Lane) -> float:
+    def _lane_cost(self, lines: CaliperShape, lane: Lane, preferred: Lane) -> float:
         bar = box_of(lines.bar)
         cost = _PER_MM_COST * lane.distance_mm + _INK_COST * self._ink.share(bar)
         if lane.side != preferred.side:
@@ -150,7 +151,7 @@ class _Room:
             cost += _OFF_PICTURE_COST
         return cost
 
-    def _bar_room(self, lines: CaliperLines) -> Box:
+    def _bar_room(self, lines: CaliperShape) -> Box:
         """A bar with room on both sides, but not at its ends: a chain of bars shares one lane."""
         left, top, right, bottom = box_of(lines.bar, -1.0)
         room_px = _BAR_ROOM_MM * self._frame.pitch_px_per_mm
@@ -159,7 +160,7 @@ class _Room:
         return left - room_px, top, right + room_px, bottom
 
     def _label_options(
-        self, lines: CaliperLines, plates: Sequence[tuple[str, Size]]
+        self, lines: CaliperShape, plates: Sequence[tuple[str, Size]]
     ) -> Iterator[tuple[float, str, Box]]:
         """Where a label may stand inside the picture, the best first, and at what cost."""
         options = sorted(
@@ -180,7 +181,7 @@ class _Room:
             if box[0] >= 0 and box[1] >= 0 and box[2] <= width_px - 1 and box[3] <= height_px - 1:
                 yield cost, text, box
 
-    def _label_box(self, lines: CaliperLines, size: Size, shift: float, stack: int) -> Box:
+    def _label_box(self, lines: CaliperShape, size: Size, shift: float, stack: int) -> Box:
         """A label outside the bar, moved along it by shares of itself and stacked outwards."""
         (x1, y1, x2, y2), (out_x, out_y), (width, height) = lines.bar, lines.outward, size
         centre_x, centre_y = (x1 + x2) / 2.0, (y1 + y2) / 2.0
@@ -198,7 +199,7 @@ class _Room:
             centre_y + height / 2,
         )
 
-    def _label(self, text: str, box: Box, lines: CaliperLines) -> Label:
+    def _label(self, text: str, box: Box, lines: CaliperShape) -> Label:
         x1, y1, x2, y2 = lines.bar
         middle_x, middle_y = (x1 + x2) / 2.0, (y1 + y2) / 2.0
         end_x = min(max(middle_x, box[0]), box[2])
@@ -208,7 +209,7 @@ class _Room:
             return Label(text, box, None)
         return Label(text, box, (middle_x, middle_y, end_x, end_y))
 
-    def _label_cost(self, box: Box, lines: CaliperLines) -> float:
+    def _label_cost(self, box: Box, lines: CaliperShape) -> float:
         """What speaks against a label there; infinite where another label is."""
         left, top, right, bottom = box
         if _count((left - _GAP_PX, top - _GAP_PX, right + _GAP_PX, bottom + _GAP_PX), self._labels):

@@ -9,8 +9,7 @@ from numpy.typing import NDArray
 from PIL import Image
 
 from app.chart.fonts import Colour
-
-Segment = tuple[float, float, float, float]
+from app.drawing.shape import Segment
 
 
 def draw_stroke(

@@ -5,8 +5,6 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 
-import numpy as np
-
 from app.calculator import Value, format_value
 from app.calculator.catalogue import CATALOGUE
 from app.calculator.display import shown_number, with_unit
@@ -75,24 +73,12 @@ def setting_sentence(reading: Reading, name: str, setting: Setting, unit: str) -
     return f"{name} {setting.value:g} {unit}: rests on {rests_on(setting)}; {said}."
 
 
-def largest_error_mm(sheet_map: SheetMap) -> float | None:
-    """The largest one-sigma error of a point where the grid was seen; None if nowhere."""
-    coverage = sheet_map.coverage
-    rows, columns = np.nonzero(coverage.cells())
-    if rows.size == 0:
-        return None
-    centres_px = (np.column_stack([columns, rows]) + 0.5) * coverage.cell_px - 0.5
-    last_px = np.array(sheet_map.picture_size_px, dtype=np.float64) - 1.0
-    largest = float(np.max(sheet_map.standard_error_mm(np.minimum(centres_px, last_px))))
-    return largest if math.isfinite(largest) else None
-
-
 def grid_sentences(sheet_map: SheetMap | None) -> list[str]:
     """What is known of the grid, a sentence each."""
     if sheet_map is None:
         return ["Grid: none found and no scale given."]
     found = "given by a box the reader drew" if sheet_map.source == "reader" else "found"
-    error_mm = largest_error_mm(sheet_map)
+    error_mm = sheet_map.largest_standard_error_mm()
     # Rounded up: "at most" stays true.
     error = "not known"
     if error_mm is not None:

@@ -61,17 +61,6 @@ def unconfirmed_statement(calibration: Calibration) -> str:
     )
 
 
-def largest_error_mm(sheet_map: SheetMap) -> float:
-    """The largest one-sigma error of a point where the grid was seen; NaN if nowhere."""
-    coverage = sheet_map.coverage
-    rows, columns = np.nonzero(coverage.cells())
-    if rows.size == 0:
-        return math.nan
-    centres_px = (np.column_stack([columns, rows]) + 0.5) * coverage.cell_px - 0.5
-    limit_px = np.array(sheet_map.picture_size_px, dtype=np.float64) - 1.0
-    return float(np.nanmax(sheet_map.standard_error_mm(np.minimum(centres_px, limit_px))))
-
-
 def grid_statement(sheet_map: SheetMap | None) -> str:
     """What is known of the grid, in one line for the status bar."""
     if sheet_map is None:
@@ -79,8 +68,8 @@ def grid_statement(sheet_map: SheetMap | None) -> str:
     pitch = (
         f"{sheet_map.x_pitch_px_per_mm:.2f} × {sheet_map.y_pitch_px_per_mm:.2f} px per small square"
     )
-    error_mm = largest_error_mm(sheet_map)
-    error = "" if math.isnan(error_mm) else f", standard error {_small_mm(error_mm)}"
+    error_mm = sheet_map.largest_standard_error_mm()
+    error = "" if error_mm is None else f", standard error {_small_mm(error_mm)}"
     if sheet_map.source == "reader":
         return f"Scale given by hand: {pitch}{error}"
     if not sheet_map.scale_is_certain:

@@ -442,3 +442,18 @@ def test_a_box_without_a_size_is_refused(opposite_px: tuple[float, float]) -> No
 def test_less_than_one_square_is_refused(way: str, squares: float) -> None:
     with pytest.raises(ValueError, match="must span at least one large square each way"):
         box_map(**{way: squares})
+
+
+def test_the_largest_error_is_that_of_the_worst_place_seen() -> None:
+    sheet_map = example_map()
+    last_px = np.array([WIDTH_PX - 1.0, HEIGHT_PX - 1.0])
+    corners_px = np.array([[0.0, 0.0], [1.0, 0.0], [0.0, 1.0], [1.0, 1.0]]) * last_px
+    worst_mm = float(sheet_map.standard_error_mm(corners_px).max())
+    found_mm = sheet_map.largest_standard_error_mm()
+    assert found_mm is not None
+    assert 0.9 * worst_mm < found_mm <= worst_mm
+
+
+def test_a_grid_seen_nowhere_has_no_largest_error() -> None:
+    nowhere = Coverage(16.0, ("0" * 75,) * 50)
+    assert example_map(coverage=nowhere).largest_standard_error_mm() is None

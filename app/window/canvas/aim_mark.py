@@ -8,10 +8,10 @@ from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QPixmap, QTransform
 from PySide6.QtWidgets import QWidget
 
-from app.window.canvas.frame import SheetFrame
+from app.drawing.frame import SheetFrame
+from app.drawing.shape import aim_segments
 from app.window.canvas.gestures.gesture import Aim
 from app.window.canvas.loupe import Loupe
-from app.window.canvas.shape import aim_segments
 
 
 class AimMark:

@@ -6,8 +6,8 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from app.window.canvas.ink_map import Box
-from app.window.canvas.shape import Segment
+from app.drawing.ink_map import Box
+from app.drawing.shape import Segment
 
 TOLERANCE_VIEW_PX = 8.0
 

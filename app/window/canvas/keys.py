@@ -7,8 +7,8 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QKeyEvent
 
+from app.drawing.frame import Vector
 from app.reading import CaliperKind
-from app.window.canvas.frame import Vector
 from app.window.canvas.moves import nudged, with_teeth
 from app.window.canvas.selection import Part, Selection, next_selection
 

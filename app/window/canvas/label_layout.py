@@ -9,8 +9,8 @@ import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
-from app.window.canvas.ink_map import Box
-from app.window.canvas.shape import Segment
+from app.drawing.ink_map import Box
+from app.drawing.shape import Segment
 
 Size = tuple[float, float]
 

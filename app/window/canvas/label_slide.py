@@ -8,8 +8,8 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
-from app.window.canvas.ink_map import Box
-from app.window.canvas.shape import Segment
+from app.drawing.ink_map import Box
+from app.drawing.shape import Segment
 
 _EDGE_PX = 8.0
 _GAP_PX = 10.0

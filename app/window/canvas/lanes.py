@@ -4,10 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 
+from app.drawing.frame import SheetFrame
+from app.drawing.ink_map import Box, InkMap
+from app.drawing.shape import Lane, caliper_shape, preferred_side
 from app.reading import Caliper, CaliperKind
-from app.window.canvas.frame import SheetFrame
-from app.window.canvas.ink_map import Box, InkMap
-from app.window.canvas.shape import Lane, caliper_shape
 
 _DISTANCES_MM = (5.0, 9.0, 13.0, 17.0, 21.0)
 _LABEL_MM = 3.6  # room for the label along the outward direction, at a middling zoom
@@ -36,11 +36,11 @@ def choose_lanes(
 
 def first_lane(kind: CaliperKind) -> Lane:
     """The lane of a caliper that is still being placed."""
-    return Lane(side=1 if kind is CaliperKind.HEIGHT else -1, distance_mm=9.0)
+    return Lane(preferred_side(kind), distance_mm=9.0)
 
 
 def _candidates(kind: CaliperKind) -> list[Lane]:
-    preferred = first_lane(kind).side
+    preferred = preferred_side(kind)
     return [Lane(side, distance) for distance in _DISTANCES_MM for side in (preferred, -preferred)]
 
 
@@ -49,7 +49,7 @@ def _cost(
 ) -> float:
     box = _bar_box(caliper, frame, lane)
     cost = lane.distance_mm / _DISTANCES_MM[0]
-    if lane.side != first_lane(caliper.kind).side:
+    if lane.side != preferred_side(caliper.kind):
         cost += 0.5
     if ink is not None:
         cost += _INK_COST * ink.share(box)

@@ -6,18 +6,14 @@ from dataclasses import replace
 
 import numpy as np
 
-from app.reading import Caliper, CaliperKind, PicturePoint, Reading
-from app.window.canvas.frame import SheetFrame, Vector
+from app.drawing.frame import SheetFrame, Vector
+from app.drawing.shape import measuring_axis
+from app.reading import Caliper, PicturePoint, Reading
 from app.window.canvas.selection import Part
 
 MOST_TEETH_AT_FIRST = 8
 MOST_TEETH = 60
 SMALLEST_SPAN_MM = 0.1  # a tenth of a small square: less is a double click, not a measurement
-
-
-def measuring_axis(kind: CaliperKind) -> int:
-    """0 where the legs are apart along the paper, 1 where they are apart down it."""
-    return 1 if kind is CaliperKind.HEIGHT else 0
 
 
 def leg_moved(caliper: Caliper, tooth: int, along_mm: float, frame: SheetFrame) -> Caliper:

@@ -12,12 +12,13 @@ from dataclasses import dataclass, replace
 from PySide6.QtCore import QLineF, QPointF, QRectF
 from PySide6.QtGui import QPixmap, QTransform
 
+from app.drawing.frame import SheetFrame, Vector, frame_of
+from app.drawing.ink_map import Box, InkMap
+from app.drawing.shape import CaliperShape, Lane, Segment, caliper_shape
 from app.reading import Caliper, Reading
 from app.window.canvas import look
 from app.window.canvas.caliper_text import ValueText, caliper_name, caliper_value, short_name
-from app.window.canvas.frame import SheetFrame, Vector, frame_of
 from app.window.canvas.hit_test import Hit, HitTarget, hit_test
-from app.window.canvas.ink_map import Box, InkMap
 from app.window.canvas.label_layout import (
     LabelPlace,
     LabelRequest,
@@ -29,7 +30,6 @@ from app.window.canvas.label_pixmaps import LabelPixmaps, LabelText
 from app.window.canvas.label_slide import Slide, slid_labels
 from app.window.canvas.lanes import choose_lanes, first_lane
 from app.window.canvas.selection import Part, Selection
-from app.window.canvas.shape import CaliperShape, Lane, Segment, caliper_shape
 
 _MARGIN_PX = 8.0
 

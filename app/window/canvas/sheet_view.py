@@ -19,19 +19,19 @@ from PySide6.QtGui import (
 )
 from PySide6.QtWidgets import QFrame, QGraphicsScene, QGraphicsView, QWidget
 
+from app.drawing.frame import SheetFrame, frame_of
+from app.drawing.ink_map import InkMap
 from app.reading import Caliper, CaliperKind, PicturePoint
 from app.reading import quantity as quantity_of
 from app.window.canvas import look
 from app.window.canvas.aim_mark import AimMark
 from app.window.canvas.camera import Camera
-from app.window.canvas.frame import SheetFrame, frame_of
 from app.window.canvas.gestures.draw_scale_box import DrawScaleBox
 from app.window.canvas.gestures.gesture import Aim, Pointer
 from app.window.canvas.gestures.place_caliper import PlaceCaliper, PlaceChain
 from app.window.canvas.gestures.two_places import TwoPlaces
 from app.window.canvas.grid_overlay import GridOverlay
 from app.window.canvas.hit_test import Hit
-from app.window.canvas.ink_map import InkMap
 from app.window.canvas.keys import Keys
 from app.window.canvas.mouse import Mouse
 from app.window.canvas.overlay import Overlay

@@ -7,13 +7,13 @@ from itertools import combinations
 import numpy as np
 import pytest
 
-from app.chart.caliper_lines import Frame
-from app.chart.ink import Box, Ink
 from app.chart.placing import PlacedCaliper, place_calipers
+from app.drawing.frame import SheetFrame
+from app.drawing.ink_map import Box, InkMap
 from app.reading import Caliper
 from tests.app.chart.chart_examples import SIZE_PX, beats, caliper, reading_of
 
-FRAME = Frame((12.0, 9.0), (8.0, 0.0), (0.0, 8.0))
+FRAME = SheetFrame((12.0, 9.0), (8.0, 0.0), (0.0, 8.0), SIZE_PX, True)
 PAPER = np.full((SIZE_PX[1], SIZE_PX[0], 3), 245, dtype=np.uint8)
 
 
@@ -27,7 +27,7 @@ def placed(
         calipers,
         {item.caliper_id: texts for item in calipers},
         FRAME,
-        Ink(pixels),
+        InkMap(pixels),
         (width_px, height_px),
         lambda text: (9.0 * len(text), 22.0),
     )
@@ -111,7 +111,7 @@ def test_a_label_away_from_its_bar_has_a_line_to_it() -> None:
 def test_the_order_decides_and_the_same_comes_out_again() -> None:
     assert placed(beats(4)) == placed(beats(4))
     assert reading_of().sheet_map is not None
-    assert place_calipers((), {}, FRAME, Ink(PAPER), SIZE_PX, lambda _: (1.0, 1.0)) == []
+    assert place_calipers((), {}, FRAME, InkMap(PAPER), SIZE_PX, lambda _: (1.0, 1.0)) == []
 
 
 def test_a_name_is_kept_before_the_bare_number() -> None:

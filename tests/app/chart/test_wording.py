@@ -15,7 +15,6 @@ from app.chart.wording import (
     grid_sentences,
     hand_figure_text,
     is_unconfirmed,
-    largest_error_mm,
     moment,
     setting_sentence,
     settings_of,
@@ -107,18 +106,14 @@ def test_the_grid_is_told_with_its_evidence() -> None:
     assert "none found" in grid_sentences(None)[0]
 
 
-def test_the_largest_error_is_that_of_the_worst_place_seen() -> None:
+def test_the_largest_error_is_rounded_up() -> None:
     sheet_map = upright_map()
-    corners_px = np.array([[0.0, 0.0], [1199.0, 0.0], [0.0, 899.0], [1199.0, 899.0]])
-    worst_mm = float(sheet_map.standard_error_mm(corners_px).max())
-    found_mm = largest_error_mm(sheet_map)
+    found_mm = sheet_map.largest_standard_error_mm()
     assert found_mm is not None
-    assert 0.9 * worst_mm < found_mm <= worst_mm
     shown = re.search(r"at most (\d\.\d{4}) mm", " ".join(grid_sentences(sheet_map)))
     assert shown is not None
     assert found_mm <= float(shown[1]) < found_mm + 1e-4
     unseen = replace(sheet_map, coverage=Coverage.from_cells(np.zeros((3, 4), dtype=bool), 300.0))
-    assert largest_error_mm(unseen) is None
     assert "not known" in " ".join(grid_sentences(unseen))
 
 

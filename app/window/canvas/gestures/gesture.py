@@ -10,8 +10,8 @@ from typing import Protocol
 
 from PySide6.QtCore import QPointF
 
+from app.drawing.frame import SheetFrame
 from app.reading import Caliper, CaliperKind, PicturePoint
-from app.window.canvas.frame import SheetFrame
 from app.window.canvas.selection import Selection
 from app.window.document import Document
 

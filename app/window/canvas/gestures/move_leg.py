@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
+from app.drawing.shape import measuring_axis
 from app.reading import Caliper, PicturePoint
 from app.window.canvas.gestures.gesture import CLICK_VIEW_PX, Aim, Gesture, Host, Pointer
-from app.window.canvas.moves import leg_moved, measuring_axis
+from app.window.canvas.moves import leg_moved
 
 
 class MoveLeg(Gesture):

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from itertools import combinations, pairwise
 
-from app.window.canvas.ink_map import Box
+from app.drawing.ink_map import Box
 from app.window.canvas.label_layout import (
     LabelPlace,
     LabelRequest,

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from app.window.canvas.ink_map import Box
+from app.drawing.ink_map import Box
 from app.window.canvas.label_slide import Slide, slid_labels
 
 VIEW = (0.0, 0.0, 1000.0, 700.0)

@@ -8,11 +8,11 @@ from itertools import pairwise
 import numpy as np
 import pytest
 
+from app.drawing.frame import SheetFrame
+from app.drawing.ink_map import InkMap
+from app.drawing.shape import Lane, caliper_shape
 from app.reading import Caliper, CaliperKind, PicturePoint
-from app.window.canvas.frame import SheetFrame
-from app.window.canvas.ink_map import InkMap
 from app.window.canvas.lanes import choose_lanes, first_lane
-from app.window.canvas.shape import Lane, caliper_shape
 from tests.app.window.canvas.hands import time_caliper
 
 FRAME = SheetFrame((0.0, 0.0), (8.0, 0.0), (0.0, 8.0), (1200, 900), has_grid=True)

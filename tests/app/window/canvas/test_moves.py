@@ -7,8 +7,8 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from app.drawing.frame import SheetFrame, frame_of
 from app.reading import Caliper, CaliperKind, PicturePoint
-from app.window.canvas.frame import SheetFrame, frame_of
 from app.window.canvas.moves import (
     MOST_TEETH,
     comb_from_two_teeth,

@@ -6,15 +6,15 @@ from dataclasses import replace
 
 import pytest
 
-from app.reading import Caliper, CaliperKind, PicturePoint
-from app.window.canvas.frame import SheetFrame
-from app.window.canvas.shape import (
+from app.drawing.frame import SheetFrame
+from app.drawing.shape import (
     BEYOND_BAR_MM,
     BEYOND_MARK_MM,
     Lane,
     aim_segments,
     caliper_shape,
 )
+from app.reading import Caliper, CaliperKind, PicturePoint
 
 UPRIGHT = SheetFrame((0.0, 0.0), (10.0, 0.0), (0.0, 10.0), (2000, 1000), has_grid=True)
 SKEWED = SheetFrame((13.0, 7.0), (9.8, 0.7), (-0.6, 10.1), (2000, 1000), has_grid=True)

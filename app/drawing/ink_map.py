@@ -1,8 +1,9 @@
-"""How much of the drawn line lies in a box of the picture: labels keep clear of it. No Qt."""
+"""How much of the drawn line lies in a box of the picture: labels keep clear of it."""
 
 from __future__ import annotations
 
 from functools import cached_property
+from math import ceil, floor
 
 import numpy as np
 from numpy.typing import NDArray
@@ -48,11 +49,12 @@ class InkMap:
     def share(self, box_px: Box) -> float:
         """The share, 0 to 1, of a box (left, top, right, bottom) in picture_px that is inked."""
         rows, columns = self._sums.shape[0] - 1, self._sums.shape[1] - 1
-        left, right = (min(max(round(x / _STEP_PX), 0), columns) for x in box_px[::2])
-        top, bottom = (min(max(round(y / _STEP_PX), 0), rows) for y in box_px[1::2])
-        area = (right - left) * (bottom - top)
-        if area <= 0:
+        # Outwards to whole cells: a thin box between two of them holds what they hold.
+        left, top = (max(floor(place / _STEP_PX), 0) for place in box_px[:2])
+        right = min(ceil(box_px[2] / _STEP_PX), columns)
+        bottom = min(ceil(box_px[3] / _STEP_PX), rows)
+        if right <= left or bottom <= top:
             return 0.0
         sums = self._sums
         inked = sums[bottom, right] - sums[top, right] - sums[bottom, left] + sums[top, left]
-        return float(inked / area)
+        return float(inked / ((right - left) * (bottom - top)))

@@ -7,8 +7,8 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from app.drawing.frame import SheetFrame, frame_of
 from app.reading import PicturePoint
-from app.window.canvas.frame import SheetFrame, frame_of
 from tests.app.reading_examples import example_map, example_reading
 from tests.app.window.canvas.hands import blank_picture, reading_of
 
@@ -69,3 +69,8 @@ def test_how_much_of_a_step_stays_on_the_picture(
 
 def test_from_the_edge_outward_there_is_no_step() -> None:
     assert SKEWED.share_inside(PicturePoint(1999.0, 500.0), (1.0, 0.0)) == 0.0
+
+
+def test_the_smaller_pitch_is_that_of_the_closer_lines() -> None:
+    frame = SheetFrame((0.0, 0.0), (0.0, 6.0), (-8.0, 0.0), (100, 80), has_grid=True)
+    assert frame.pitch_px_per_mm == 6.0

@@ -1,4 +1,4 @@
-"""The grid as the canvas uses it: plain numbers, quick for single points. No Qt.
+"""The grid as drawing uses it: plain numbers, quick for single points. No Qt.
 
 Without a grid the frame is upright and of a guessed pitch: good for the length of a drawn
 leg, never for a value (`has_grid` says which it is).
@@ -6,6 +6,7 @@ leg, never for a value (`has_grid` says which it is).
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 from app.reading import PicturePoint, Reading
@@ -51,6 +52,11 @@ class SheetFrame:
         """The picture_px vector of a step on the grid."""
         (xx, xy), (yx, yy) = self.x_step_px, self.y_step_px
         return x_mm * xx + y_mm * yx, x_mm * xy + y_mm * yy
+
+    @property
+    def pitch_px_per_mm(self) -> float:
+        """The smaller of the two pitches."""
+        return min(math.hypot(*self.x_step_px), math.hypot(*self.y_step_px))
 
     def key_step_mm(self) -> float:
         """How far one press of an arrow key goes: 0.1 mm of grid, without one 0.25 px."""

@@ -8,9 +8,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from app.drawing.frame import SheetFrame, Vector
 from app.reading import Caliper, CaliperKind, PicturePoint
-from app.window.canvas.frame import SheetFrame, Vector
-from app.window.canvas.moves import measuring_axis
 
 Segment = tuple[float, float, float, float]
 
@@ -56,6 +55,16 @@ class CaliperShape:
     marks: tuple[Vector, Vector]
     bar: Segment
     outward: Vector
+
+
+def measuring_axis(kind: CaliperKind) -> int:
+    """0 where the legs are apart along the paper, 1 where they are apart down it."""
+    return 1 if kind is CaliperKind.HEIGHT else 0
+
+
+def preferred_side(kind: CaliperKind) -> int:
+    """Where a bar stands best: above the wave, right of a height."""
+    return 1 if kind is CaliperKind.HEIGHT else -1
 
 
 def caliper_shape(caliper: Caliper, frame: SheetFrame, lane: Lane) -> CaliperShape:

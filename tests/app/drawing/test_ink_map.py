@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 from numpy.typing import NDArray
 
-from app.window.canvas.ink_map import InkMap
+from app.drawing.ink_map import InkMap
 
 
 def page(paper: tuple[int, int, int] = (255, 250, 248)) -> NDArray[np.uint8]:
@@ -69,3 +69,9 @@ def test_the_pixels_stay_as_they_are() -> None:
     before = pixels.copy()
     InkMap(pixels).share((0.0, 0.0, 100.0, 100.0))
     assert (pixels == before).all()
+
+
+def test_a_box_thinner_than_a_cell_holds_what_its_cells_hold() -> None:
+    pixels = page()
+    pixels[100:104, 40:200] = 20
+    assert InkMap(pixels).share((60.0, 101.0, 180.0, 102.0)) == 1.0

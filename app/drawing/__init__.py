@@ -1,0 +1,1 @@
+"""What a caliper looks like on a picture: for the window and for the annotated picture. No Qt."""
