@@ -29,6 +29,11 @@ class EarlyPicture:
         self._thread = threading.Thread(target=self._decode, name="early picture")
         self._thread.start()
 
+    def is_there_within(self, patience_s: float) -> bool:
+        """Wait a little; whether `result` would answer at once now."""
+        self._thread.join(patience_s)
+        return not self._thread.is_alive()
+
     def result(self) -> Picture:
         """Wait for the picture; raises what `open_picture` raised."""
         self._thread.join()
@@ -67,7 +72,7 @@ def build(path: str | None, arguments: list[str]) -> tuple[QApplication, MainWin
     window = MainWindow(memory_log=memory_log)
     faults.install_hooks(window.show_fault)
     if file is not None:
-        window.opening.open_path(file, None if early is None else early.result)
+        window.opening.open_path(file, early)
     QTimer.singleShot(_COLLECT_AFTER_MS, _collect_again)
     return app, window
 

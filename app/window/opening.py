@@ -7,6 +7,7 @@ from collections.abc import Callable
 from dataclasses import replace
 from functools import partial
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QBuffer, QByteArray, QIODevice, QMimeData, QObject, Signal
 from PySide6.QtGui import QImage, QImageWriter
@@ -38,8 +39,12 @@ from imaging import (
 )
 from imaging import find_grid as find_grid_on
 
+if TYPE_CHECKING:
+    from app.window.main import EarlyPicture
+
 PASTED_NAME = "Pasted picture"
 _PAINT_FIRST_MS = 100
+_PATIENCE_S = 0.6
 _log = logging.getLogger(__name__)
 
 
@@ -81,11 +86,12 @@ class Opening(QObject):
         if path is not None:
             self.open_path(path)
 
-    def open_path(self, path: Path, early: Callable[[], Picture] | None = None) -> None:
+    def open_path(self, path: Path, early: EarlyPicture | None = None) -> None:
         """Open a picture or a reading.
 
-        `early` waits for a picture whose decoding has begun already; it is opened at once, so
-        that a window not shown yet is painted only one time, with the picture.
+        `early` is the picture with its decoding begun already. One that is soon there is
+        opened at once, so that a window not shown yet is painted only one time, with the
+        picture.
         """
         if not self._may_leave():
             return
@@ -104,11 +110,12 @@ class Opening(QObject):
                 self._open_reading(reading_path)
             if answer != 1:
                 return
-        if early is None:
-            self._decode(path.name, partial(open_picture, path), self._first_page)
+        if early is None or not early.is_there_within(_PATIENCE_S):
+            work = partial(open_picture, path) if early is None else early.result
+            self._decode(path.name, work, self._first_page)
             return
         try:
-            picture = early()
+            picture = early.result()
         except SmallsquareError as error:
             self._not_opened(error)
             return

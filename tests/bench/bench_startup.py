@@ -129,8 +129,9 @@ def _seconds_to_first_picture(script: str, picture: Path, display: str) -> float
         capture_output=True,
         text=True,
         timeout=60.0,
-        check=True,
+        check=False,
     )
+    assert finished.returncode == 0, finished.stderr
     return float(finished.stdout.split()[-1]) - begun
 
 

@@ -66,6 +66,29 @@ print(window.document.reading, window.notices.notice("trouble").label.text())
     assert said.startswith("None “nowhere.jpg” was not found")
 
 
+def test_a_picture_that_takes_long_does_not_keep_the_window_away(page: Path) -> None:
+    script = """
+import sys, threading
+import app.window.main
+from PySide6.QtTest import QTest
+decode, go_on = app.window.main.open_picture, threading.Event()
+def slow(path):
+    assert go_on.wait(20.0)
+    return decode(path)
+app.window.main.open_picture = slow
+application, window = app.window.main.build(sys.argv[1], sys.argv[:1])
+window.show()
+print(window.document.picture, window.prompt.busy.text(), window.prompt.cancel.isVisible())
+go_on.set()
+while window.document.picture is None:
+    QTest.qWait(20)
+print(window.document.picture.file_name)
+window.close()
+"""
+    lines = run_python(script, str(page)).splitlines()
+    assert lines == ["None Opening sheet 1.png True", "sheet 1.png"]
+
+
 def test_an_error_while_decoding_early_comes_out_where_it_is_waited_for(tmp_path: Path) -> None:
     wrong = tmp_path / "notes.png"
     wrong.write_text("just words")
