@@ -87,4 +87,7 @@ def run(path: str | None) -> int:
     """Open the window, with a picture or reading if one is named; returns the exit code."""
     app, window = build(path, sys.argv[:1])
     window.showMaximized()
-    return app.exec()
+    code = app.exec()
+    # A desktop session that ends closes no windows, but no thread may outlive the program.
+    window.jobs.wait_for_all()
+    return code

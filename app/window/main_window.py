@@ -5,7 +5,7 @@ from __future__ import annotations
 import logging
 from dataclasses import replace
 
-from PySide6.QtCore import QPointF, Qt
+from PySide6.QtCore import QPointF, QSize, Qt
 from PySide6.QtGui import QCloseEvent, QCursor, QDragEnterEvent, QDropEvent, QGuiApplication
 from PySide6.QtWidgets import QLabel, QMainWindow, QSplitter, QVBoxLayout, QWidget
 
@@ -33,6 +33,7 @@ from app.window.statements import (
 )
 from app.window.walk import Walk
 
+_USUAL_SIZE = QSize(1320, 800)
 _log = logging.getLogger(__name__)
 
 
@@ -182,7 +183,7 @@ class MainWindow(QMainWindow):
         bar.addPermanentWidget(self._zoom_label)
         self._pointer_label.setMinimumWidth(150)
         self._zoom_label.setMinimumWidth(56)
-        self.resize(1320, 800)
+        self.resize(_USUAL_SIZE.boundedTo(self.screen().availableSize()))
 
     def _connect(self) -> None:
         self.document.changed.connect(self._follow)
