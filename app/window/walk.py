@@ -183,9 +183,11 @@ class Walk(QObject):
 
     def _another_words(self) -> str:
         reading, line = self._document.reading, self.line
-        if reading is None or line is None or reading.calipers_of(line.key, line.lead):
+        if reading is None or line is None:
             return "Another beat  (B)"
-        return f"Mark {line.quantity.label} {line.lead or ''}".rstrip() + "  (B)"
+        is_marked = bool(reading.calipers_of(line.key, line.lead))
+        verb = "Another" if is_marked else "Mark"
+        return f"{verb} {line.quantity.label} {line.lead or ''}".rstrip() + "  (B)"
 
     def _say(self) -> None:
         self.idle_words.emit(self._words())

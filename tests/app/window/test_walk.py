@@ -58,6 +58,7 @@ def test_every_value_is_marked_until_speed_and_gain_are_confirmed(opened: MainWi
 
 def test_b_marks_another_beat_and_the_line_is_the_mean(opened: MainWindow) -> None:
     measure(opened, "qrs", "II", 300.0, 320.0)
+    assert opened.worksheet.another.text() == "Another QRS II  (B)"
     QTest.keyClick(opened, Qt.Key.Key_B)
     assert "beat 2" in opened.prompt.text.words()
     click_picture(opened, 500.0, 300.0)
