@@ -75,17 +75,6 @@ class Choice:
     evidence: tuple[str, ...]
 
 
-@dataclass(frozen=True, slots=True, eq=False)
-class _Candidate:
-    pair: Pair
-    upright: Fifths
-    level: Fifths
-
-    @property
-    def clear(self) -> float:
-        return min(self.upright.bold_clear, self.level.bold_clear)
-
-
 def choose_waves(plane: FloatPlane, bin_px: int) -> Choice | GridNotFound:
     """Look for the grid's waves on a plane of darkness.
 
@@ -112,36 +101,25 @@ def _with_bold(
     plane: FloatPlane, bin_px: int, pairs: list[Pair], profiles: tuple[Profiles, Profiles]
 ) -> Choice | GridNotFound | None:
     """The strongest pair that shows thin lines with every fifth bold; None without any."""
-    accepted = []
-    for pair in pairs:
-        found = [fifths_of(part, wave) for part, wave in zip(profiles, pair.lengths, strict=True)]
-        candidate = _Candidate(pair, *found)
-        if _is_ecg(candidate) and not _is_dots(plane, pair):
-            accepted.append(candidate)
-    if not accepted:
-        return None
-    best = max(accepted, key=lambda candidate: candidate.pair.power)
-    _log.debug("thin and bold lines: %s", best)
-    if bin_px / max(best.pair.lengths) < COARSEST_PX_PER_MM:
-        return TOO_COARSE
-    return Choice(
-        best.pair.upright,
-        best.pair.level,
-        tuple(range(1, 16)),
-        5,
-        True,
-        ("Every fifth line is bolder than the four between: 1 mm and 5 mm are told apart.",),
-    )
+    for pair in sorted(pairs, key=lambda pair: -pair.power):
+        both = [fifths_of(part, wave) for part, wave in zip(profiles, pair.lengths, strict=True)]
+        if not _is_ecg(both) or _is_dots(plane, pair):
+            continue
+        _log.debug("thin and bold lines: %s %s", pair, both)
+        if bin_px / max(pair.lengths) < COARSEST_PX_PER_MM:
+            return TOO_COARSE
+        told = "Every fifth line is bolder than the four between: 1 mm and 5 mm are told apart."
+        return Choice(pair.upright, pair.level, tuple(range(1, 16)), 5, True, (told,))
+    return None
 
 
-def _is_ecg(candidate: _Candidate) -> bool:
+def _is_ecg(both: list[Fifths]) -> bool:
     """Both families show thin and bold lines, or one does and the other agrees."""
-    both = (candidate.upright, candidate.level)
     if all(family.is_ecg for family in both):
         return True
     if not any(family.is_ecg for family in both):
         return False
-    other = candidate.level if candidate.upright.is_ecg else candidate.upright
+    other = both[1] if both[0].is_ecg else both[0]
     thin = other.thin_over_bold > _THIN_IN_OTHER
     return other.seen and thin and other.share > _LEAST_SHARE_OF_OTHER
 
@@ -155,8 +133,7 @@ def _is_dots(plane: FloatPlane, pair: Pair) -> bool:
     for along, across in ((pair.upright, pair.level), (pair.level, pair.upright)):
         lines = np.array(along)
         waves = np.stack([lines, lines + np.array(across) / 5.0, lines - np.array(across) / 5.0])
-        side = min(plane.shape)
-        tiles = Tiles.over(plane.shape, side, max(1, side // 2))
+        tiles = Tiles.over(plane.shape, min(plane.shape))
         strength = np.sqrt((np.abs(lock_in(plane, waves, tiles)) ** 2).mean(axis=(0, 1)))
         if min(strength[1], strength[2]) > _DOTS_SHARE * strength[0]:
             return True

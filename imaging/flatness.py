@@ -76,10 +76,11 @@ def _surface(places: FloatArray) -> FloatArray:
 def _robust_fit(design: FloatArray, values: FloatArray) -> FloatArray:
     """Least squares with Tukey's biweight: tiles that hold much of a trace fall out."""
     weights = np.ones(len(values))
-    surface = np.zeros(design.shape[1])
+    surface: FloatArray = np.zeros(design.shape[1])
     for _ in range(_ROUNDS):
         root = np.sqrt(weights)
-        surface = np.linalg.lstsq(design * root[:, None], values * root, rcond=1e-8)[0]
+        solved = np.linalg.lstsq(design * root[:, None], values * root, rcond=1e-8)
+        surface = np.asarray(solved[0], dtype=np.float64)
         residual = values - design @ surface
         sigma = max(float(np.median(np.abs(residual))) / 0.6745, 1e-9)
         ratio = residual / (_TUKEY * sigma)

@@ -18,7 +18,7 @@ MAX_WORKING_PIXELS = 10_500_000
 _BLOCK_PX = 48
 _BLOCK_STRIDE = 3
 _PATCH_PX = 32
-_PATCHES = 400
+_PATCHES = 120
 _PAPER_PERCENTILE = 80.0
 _GRID_PERCENTILES = (70.0, 94.0)
 _BOLD_PERCENTILE = 93.0
@@ -65,13 +65,15 @@ def grid_ink(pixels: NDArray[np.uint8], max_pixels: int = MAX_WORKING_PIXELS) ->
     bin_px = max(1, int(np.ceil(np.sqrt(height_px * width_px / max_pixels))))
     bin_px = min(bin_px, height_px, width_px)
     # cv2.transform rounds to 8 bits again: 0.3 grey levels, which the lock-in averages away.
-    light = cv2.transform(pixels, grid_weights(pixels)[np.newaxis])
-    light = light.reshape(height_px, width_px)
+    light = np.asarray(
+        cv2.transform(pixels, grid_weights(pixels)[np.newaxis]), dtype=np.uint8
+    ).reshape(height_px, width_px)
     if bin_px > 1:
         rows, columns = height_px // bin_px, width_px // bin_px
         whole = light[: rows * bin_px, : columns * bin_px]
-        light = cv2.resize(whole, (columns, rows), interpolation=cv2.INTER_AREA)
-    return GridInk(_darkness(light.reshape(light.shape[:2])), bin_px)
+        binned = cv2.resize(whole, (columns, rows), interpolation=cv2.INTER_AREA)
+        light = np.asarray(binned, dtype=np.uint8)
+    return GridInk(_darkness(light), bin_px)
 
 
 def grid_weights(pixels: NDArray[np.uint8]) -> FloatPlane:
@@ -91,7 +93,8 @@ def grid_weights(pixels: NDArray[np.uint8]) -> FloatPlane:
             for top, left in zip(tops, lefts, strict=True)
         ]
     ).astype(np.float32)
-    paper = np.percentile(patches, _PAPER_PERCENTILE, axis=1, keepdims=True)
+    index = round((patches.shape[1] - 1) * _PAPER_PERCENTILE / 100.0)
+    paper = np.partition(patches, index, axis=1)[:, index : index + 1]
     darkness = (paper - patches).reshape(-1, 3)
     total = darkness.sum(axis=1)
     low, high = np.percentile(total, _GRID_PERCENTILES)
@@ -119,8 +122,9 @@ def _darkness(light: NDArray[np.uint8]) -> FloatPlane:
     rows, columns = light.shape
     paper = _block_percentile(light, _PAPER_PERCENTILE)
     if min(paper.shape) >= 3:
-        paper = cv2.medianBlur(paper, 3)
-    plane = np.asarray(cv2.resize(paper, (columns, rows), interpolation=cv2.INTER_LINEAR))
+        paper = np.asarray(cv2.medianBlur(paper, 3), dtype=np.float32)
+    smooth = cv2.resize(paper, (columns, rows), interpolation=cv2.INTER_LINEAR)
+    plane: FloatPlane = np.asarray(smooth, dtype=np.float32)
     np.subtract(plane, light, out=plane)
     blocks = _block_percentile(plane, _BOLD_PERCENTILE)
     printed = blocks[blocks > _FAINTEST_GREY_LEVELS]

@@ -27,6 +27,7 @@ SMALLEST_SIDE_PX = 60
 _SPECTRUM_PIXELS = 4_200_000
 _TILE_MM = 15.0
 _SMALL_TILE_MM = 10.0
+_COVERAGE_WAVES = 4
 _MOST_STRAY = 0.15
 # The bars of a span of 5 to 50 mm: half a millisecond, or one on a coarse scan, at 25 mm/s.
 _BAR_MM = 0.0125
@@ -93,8 +94,7 @@ def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
     if smallest_mm < 1.5 * _SMALL_TILE_MM:
         return TOO_SMALL
     tile_mm = _TILE_MM if smallest_mm >= 3.0 * _TILE_MM else _SMALL_TILE_MM
-    side_px = round(tile_mm * px_per_mm)
-    tiles = Tiles.over(ink.darkness.shape, side_px, side_px // 2)
+    tiles = Tiles.over(ink.darkness.shape, round(tile_mm * px_per_mm))
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * px_per_mm
     fifths = np.array([number for number in choice.fifths if number <= highest])
     fits = [fit_lines(ink.darkness, wave, fifths, choice.first, tiles) for wave in waves]
@@ -123,9 +123,9 @@ def _sheet_map(
             change @ fit.covariance @ change.T
         )
     rows = _origin_on_picture(rows, size_px)
-    steps = np.linalg.inv(rows[:, :2])
+    steps: FloatArray = np.asarray(np.linalg.inv(rows[:, :2]), dtype=np.float64)
     origin = -steps @ rows[:, 2]
-    jacobian = _jacobian(rows, steps, origin)
+    jacobian = _jacobian(steps, origin)
     in_px = jacobian @ covariance @ jacobian.T
     return SheetMap(
         picture_size_px=size_px,
@@ -148,7 +148,7 @@ def _origin_on_picture(rows: FloatArray, size_px: tuple[int, int]) -> FloatArray
     return shifted
 
 
-def _jacobian(rows: FloatArray, steps: FloatArray, origin: FloatArray) -> FloatArray:
+def _jacobian(steps: FloatArray, origin: FloatArray) -> FloatArray:
     """Of (origin, x_step, y_step) in the two rows (wave x, wave y, start), shape (6, 6)."""
     jacobian = np.zeros((6, 6))
     for axis in range(2):
@@ -163,16 +163,18 @@ def _jacobian(rows: FloatArray, steps: FloatArray, origin: FloatArray) -> FloatA
 
 
 def _coverage(coarse: GridInk, bin_px: int, fits: _Fits, choice: Choice) -> Coverage:
+    """Cells in which the grid is printed, from the few strongest waves."""
     times = coarse.bin_px // bin_px
     combs = []
     for fit in fits.both:
         wave = fit.wave * times
+        # Pixel p of the coarse plane lies at times * p + (times - 1) / 2 of the working one.
         start_mm = fit.start_mm + float(fit.wave.sum()) * (times - 1) / 2.0
-        highest = 5.0 * HIGHEST_CYCLES_PER_PX / float(np.hypot(*wave))
-        kept = np.array(choice.fifths[: len(fit.amplitudes)]) <= highest
-        fifths = np.array(choice.fifths[: len(fit.amplitudes)])[kept] / 5.0
-        turned = fit.amplitudes[kept] * np.exp(2j * np.pi * fifths * start_mm)
-        combs.append(Comb(np.outer(fifths, wave), turned))
+        fifths = np.array(choice.fifths[: len(fit.amplitudes)]) / 5.0
+        strength = np.abs(fit.amplitudes) * (fifths * np.hypot(*wave) <= HIGHEST_CYCLES_PER_PX)
+        kept = np.argsort(-strength)[:_COVERAGE_WAVES]
+        turned = fit.amplitudes[kept] * np.exp(2j * np.pi * fifths[kept] * start_mm)
+        combs.append(Comb(np.outer(fifths[kept], wave), turned))
     px_per_mm = 1.0 / float(np.hypot(*fits.both[0].wave)) / times
     cells, cell_px = seen_cells(coarse.darkness, (combs[0], combs[1]), 5.0 * px_per_mm)
     return Coverage.from_cells(cells, float(cell_px * coarse.bin_px))

@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.lib.stride_tricks import sliding_window_view
 from numpy.typing import NDArray
 
 FloatArray = NDArray[np.float64]
@@ -18,41 +17,36 @@ class Tiles:
 
     Attributes
     ----------
-    side_px, step_px : int
-        Side of a window and distance of neighbours, in pixels of the plane.
+    step_px : int
+        Distance of neighbours in pixels of the plane; a window is two steps wide.
     shape : (int, int)
         Rows and columns of tiles.
     smooth : bool
         Hann windows (for phases), else plain boxes (for where the grid ends).
     """
 
-    side_px: int
     step_px: int
     shape: tuple[int, int]
     smooth: bool = True
 
     @classmethod
-    def over(
-        cls, plane_shape: tuple[int, int], side_px: int, step_px: int, *, smooth: bool = True
-    ) -> Tiles:
-        """As many whole windows as fit; at least one each way where the plane holds it."""
-        side_px = min(side_px, *plane_shape)
-        rows, columns = ((length - side_px) // step_px + 1 for length in plane_shape)
-        return cls(side_px, step_px, (rows, columns), smooth)
+    def over(cls, plane_shape: tuple[int, int], side_px: int, *, smooth: bool = True) -> Tiles:
+        """As many whole windows as fit; at least one each way, smaller if it must be."""
+        step_px = max(1, min(side_px, *plane_shape) // 2)
+        rows, columns = (length // step_px - 1 for length in plane_shape)
+        return cls(step_px, (rows, columns), smooth)
 
-    def window(self) -> FloatArray:
-        """Weights along one side, summing to one."""
+    def halves(self) -> FloatArray:
+        """Weights of a window's first and second half, shape (2, step), summing to one."""
+        side_px = 2 * self.step_px
         if not self.smooth:
-            return np.full(self.side_px, 1.0 / self.side_px)
-        places = (np.arange(self.side_px) + 0.5) / self.side_px
-        hann = 1.0 - np.cos(2.0 * np.pi * places)
-        return np.asarray(hann / hann.sum())
+            return np.full((2, self.step_px), 1.0 / side_px)
+        hann = 1.0 - np.cos(2.0 * np.pi * (np.arange(side_px) + 0.5) / side_px)
+        return np.asarray((hann / hann.sum()).reshape(2, self.step_px))
 
     def centres_px(self) -> FloatArray:
         """x and y of the tiles' centres on the plane, shape (rows, columns, 2)."""
-        y_px, x_px = (
-            np.arange(count) * self.step_px + (self.side_px - 1) / 2.0 for count in self.shape
-        )
+        y_px, x_px = (np.arange(1, count + 1) * self.step_px - 0.5 for count in self.shape)
         return np.stack(np.meshgrid(x_px, y_px), axis=-1)
 
 
@@ -71,19 +65,26 @@ def lock_in(plane: NDArray[np.float32], waves: FloatArray, tiles: Tiles) -> Comp
     ndarray of complex128, shape (tile rows, tile columns, K)
         Phases are counted from pixel (0, 0) of the plane.
     """
-    window = tiles.window()
-    within = np.arange(tiles.side_px)
-    turns = np.outer(waves[:, 1], within)
-    down = window * np.exp(-2j * np.pi * turns)
-    parts = np.concatenate([down.real, down.imag]).astype(np.float32)
-    across = np.exp(-2j * np.pi * np.outer(waves[:, 0], np.arange(plane.shape[1])))
-    count = len(waves)
-    result = np.empty((*tiles.shape, count), dtype=np.complex128)
-    for row in range(tiles.shape[0]):
-        top = row * tiles.step_px
-        columns = parts @ plane[top : top + tiles.side_px]
-        turned = (columns[:count] + 1j * columns[count:]) * across
-        windows = sliding_window_view(turned, tiles.side_px, axis=1)[:, :: tiles.step_px]
-        start = np.exp(-2j * np.pi * waves[:, 1] * top)
-        result[row] = (windows @ window).T * start
-    return result
+    step, (rows, columns) = tiles.step_px, tiles.shape
+    halves = tiles.halves()
+    # Rows first: each strip of one step is met with both halves of the window.
+    down = _phasors(waves[:, 1], step) * halves[:, np.newaxis]
+    parts = np.concatenate([down.real, down.imag]).reshape(-1, step).astype(np.float32)
+    across = _phasors(waves[:, 0], (columns + 1) * step).astype(np.complex64)
+    weights = halves.T.astype(np.complex64)
+    strips = np.empty((rows + 1, 2, len(waves), columns + 1, 2), dtype=np.complex64)
+    for row in range(rows + 1):
+        strip = plane[row * step : (row + 1) * step, : (columns + 1) * step]
+        real, imaginary = (parts @ strip).reshape(2, 2, len(waves), -1)
+        turned = (real + np.complex64(1j) * imaginary) * across
+        strips[row] = turned.reshape(2, len(waves), columns + 1, step) @ weights
+    starts = _phasors(waves[:, 1] * step, rows + 1).T[:, :, np.newaxis]
+    upper, lower = (strips[:, half, :, :-1, 0] + strips[:, half, :, 1:, 1] for half in (0, 1))
+    found = upper[:-1] * starts[:-1] + lower[1:] * starts[1:]
+    return np.asarray(found.transpose(0, 2, 1), dtype=np.complex128)
+
+
+def _phasors(cycles_per_px: FloatArray, count: int) -> ComplexArray:
+    """``exp(-2 pi i f n)`` for each wave and n = 0 .. count - 1, shape (K, count)."""
+    turns = np.outer(cycles_per_px, np.arange(count))
+    return np.asarray(np.exp(-2j * np.pi * turns))

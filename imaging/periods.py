@@ -127,7 +127,8 @@ def _without_side_waves(family: Waves) -> Waves:
     """Leave out waves beside a clearly stronger one: lines beating with the pixels."""
     apart = np.abs(np.log(family.lengths[:, np.newaxis] / family.lengths[np.newaxis]))
     stronger = family.power[np.newaxis] > _STRONGER * family.power[:, np.newaxis]
-    return family.where(~((apart < _BESIDE) & stronger).any(axis=1))
+    beside: NDArray[np.bool_] = np.asarray(((apart < _BESIDE) & stronger).any(axis=1))
+    return family.where(~beside)
 
 
 def _pair(wave: FloatArray) -> tuple[float, float]:

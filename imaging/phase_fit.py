@@ -133,10 +133,11 @@ def _robust_plane(
     """Weighted least squares with Tukey's biweight; strong tiles count more."""
     base = strength**2
     weights = base.copy()
-    solution = np.zeros(design.shape[1])
+    solution: FloatArray = np.zeros(design.shape[1])
     for _ in range(12):
         scaled = design * weights[:, np.newaxis]
-        solution = np.linalg.lstsq(scaled.T @ design, scaled.T @ offsets_mm, rcond=None)[0]
+        solved = np.linalg.lstsq(scaled.T @ design, scaled.T @ offsets_mm, rcond=None)
+        solution = np.asarray(solved[0], dtype=np.float64)
         residual = offsets_mm - design @ solution
         sigma = float(np.median(np.abs(residual[base > 0.0]))) / 0.6745 if base.any() else 0.0
         ratio = residual / max(_TUKEY * sigma, 1e-9)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -20,13 +21,13 @@ class Profiles:
 
     Attributes
     ----------
-    bands : ndarray of float64, shape (BANDS, N)
+    bands : ndarray of float32, shape (BANDS, N)
         Mean darkness under a Hann window, its mean removed.
     variance : float
         Of the darkness of all the plane's pixels.
     """
 
-    bands: FloatArray
+    bands: FloatPlane
     variance: float
 
     def amplitudes(self, base: float, multiples: FloatArray) -> Amplitudes:
@@ -36,8 +37,11 @@ class Profiles:
         shows as a steady drift of phase from band to band.
         """
         places = np.arange(self.bands.shape[1])
-        waves = np.exp(-2j * np.pi * np.outer(places, np.concatenate([[base], multiples * base])))
-        found = self.bands @ waves
+        turns = np.outer(places, np.concatenate([[base], multiples * base]))
+        # Single precision is twice as fast and errs by 1e-6 of a turn once whole ones are off.
+        angles = ((turns - np.rint(turns)) * (2.0 * np.pi)).astype(np.float32)
+        real, imaginary = self.bands @ np.cos(angles), self.bands @ np.sin(angles)
+        found: ComplexArray = np.asarray(real - 1j * imaginary, dtype=np.complex128)
         drift = _drift_cycles(found[:, 0])
         number = np.arange(len(found))[:, np.newaxis]
         in_step = found[:, 1:] * np.exp(-2j * np.pi * drift * number * multiples)
@@ -77,13 +81,13 @@ def profiles_of(plane: FloatPlane, skew_rad: float) -> tuple[Profiles, Profiles]
 def _banded(plane: FloatPlane, variance: float) -> Profiles:
     """Mean over bands of rows, windowed."""
     edges = np.linspace(0, plane.shape[0], BANDS + 1).round().astype(int)
-    bands = np.stack(
-        [plane[top:bottom].mean(axis=0) for top, bottom in zip(edges, edges[1:], strict=False)]
-    ).astype(np.float64)
+    bands = np.stack([plane[top:bottom].mean(axis=0) for top, bottom in pairwise(edges)]).astype(
+        np.float64
+    )
     window = np.hanning(bands.shape[1])
     window /= window.sum()
     bands -= (bands @ window)[:, np.newaxis]
-    return Profiles(bands * window, variance)
+    return Profiles((bands * window).astype(np.float32), variance)
 
 
 def _drift_cycles(values: ComplexArray) -> float:

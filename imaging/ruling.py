@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -61,9 +62,7 @@ def ruling_of(profiles: Profiles, wave: float) -> Ruling:
     second = darkness[int(np.argmax(darkness.sum(axis=1)))][1:2]
     narrow = bool((second > max(_NARROW * strength[0], 3.0 * found.errors[:2].max())).all())
     ends = np.cumsum([most] + [len(part) for part in parts])
-    longer = max(
-        float(np.median(surplus[start:end])) for start, end in zip(ends, ends[1:], strict=False)
-    )
+    longer = max(float(np.median(surplus[start:end])) for start, end in pairwise(ends))
     is_lines = in_step > _IN_STEP and narrow and longer < _LONGER_PERIOD * float(surplus[0])
     share = 2.0 * float(surplus[:most].sum()) / profiles.variance
     return Ruling(seen, is_lines, _lines_per_cycle(strength[:most], found.errors[:most]), share)

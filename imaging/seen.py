@@ -57,22 +57,16 @@ def seen_cells(
     cell_px = max(1, round(window_px / 2.0))
     before = cell_px // 2
     shape = tuple(int(np.ceil(side / cell_px)) for side in plane.shape)
-    after = [
-        (count + 1) * cell_px - before - side
-        for count, side in zip(shape, plane.shape, strict=True)
-    ]
-    padded = np.asarray(
-        cv2.copyMakeBorder(plane, before, after[0], before, after[1], cv2.BORDER_CONSTANT)
-    )
-    tiles = Tiles.over(padded.shape, 2 * cell_px, cell_px, smooth=False)
+    after = (np.array(shape) + 1) * cell_px - before - plane.shape
+    padded = np.pad(plane, ((before, int(after[0])), (before, int(after[1]))))
+    tiles = Tiles.over(padded.shape, 2 * cell_px, smooth=False)
     share = np.zeros(tiles.shape)
     for comb in combs:
         share += 0.5 * _share(padded, comb, tiles, before)
-    cells = (share > _SEEN_SHARE).astype(np.uint8)
     closing = cv2.getStructuringElement(cv2.MORPH_RECT, (_CLOSED_CELLS, _CLOSED_CELLS))
     # Closed on a border of its own, or the picture's edge would count as grid.
-    wide = cv2.copyMakeBorder(cells, *[_CLOSED_CELLS] * 4, cv2.BORDER_CONSTANT)
-    wide = cv2.morphologyEx(wide, cv2.MORPH_CLOSE, closing)
+    wide = np.pad((share > _SEEN_SHARE).astype(np.uint8), _CLOSED_CELLS)
+    wide = np.asarray(cv2.morphologyEx(wide, cv2.MORPH_CLOSE, closing), dtype=np.uint8)
     cells = wide[_CLOSED_CELLS:-_CLOSED_CELLS, _CLOSED_CELLS:-_CLOSED_CELLS]
     return _without_crumbs(cells), cell_px
 
@@ -90,7 +84,7 @@ def _without_crumbs(cells: NDArray[np.uint8]) -> BoolArray:
     """Leave out groups of cells too small to hold a caliper."""
     import cv2
 
-    count, labels, stats, _ = cv2.connectedComponentsWithStats(cells, connectivity=4)
+    _, labels, stats, _ = cv2.connectedComponentsWithStats(cells, connectivity=4)
     large = stats[:, cv2.CC_STAT_AREA] >= _FEWEST_CELLS
     large[0] = False
     return np.asarray(large[labels])

@@ -15,6 +15,8 @@ _HIGHEST_CYCLES_PER_PX = 0.475
 _FEWEST_CYCLES = 3.5
 _FLOOR_BLOCK = (9, 32)
 _KEPT = 200
+_ROWS_TOGETHER = 4
+_FEWEST_ROWS = 64
 _ON_RAY_BINS = 1.6
 _VOTERS = 40
 _FAINTEST_SNR = 10.0
@@ -60,15 +62,10 @@ def waves_of(plane: FloatPlane) -> tuple[Waves, Waves, float]:
     skew_rad : float
         Clockwise turn of the lines (y down).
     """
-    power = _power(plane)
-    shape = plane.shape
-    # The halved axis of a real picture's spectrum has an even length behind it.
-    bins = (1.0 / power.shape[0], 0.5 / (power.shape[1] - 1))
-    upright = _peaks(_slab_along_x(power), bins[1], bins[0], shape[1])
-    level = _peaks(_slab_along_y(power), bins[0], bins[1], shape[0])
-    # The second slab holds (minor = x, major = y).
+    upright = _peaks(plane)
+    level = _peaks(np.ascontiguousarray(plane.T))
     level = Waves(level.waves[:, ::-1], level.power, level.snr)
-    tolerance = _ON_RAY_BINS / min(shape)
+    tolerance = _ON_RAY_BINS / min(plane.shape)
     skew_rad = _vote(upright, level, tolerance)
     upright = upright.where(_off_ray(upright.waves, skew_rad) < tolerance)
     level = level.where(_off_ray(level.waves @ _QUARTER_BACK, skew_rad) < tolerance)
@@ -79,55 +76,50 @@ def waves_of(plane: FloatPlane) -> tuple[Waves, Waves, float]:
 _QUARTER_BACK = np.array([[0.0, -1.0], [1.0, 0.0]])
 
 
-def _power(plane: FloatPlane) -> FloatPlane:
-    """Power of the plane under a Hann window; rows run over both signs of y."""
+def _slab(plane: FloatPlane) -> tuple[FloatPlane, float, float]:
+    """Power near the x axis of frequency, under a Hann window, and the size of its bins.
+
+    Rows run over y from -reach to reach, columns over x from 0 up. Nothing steeper is
+    wanted, so rows are first taken together.
+    """
     import cv2
 
-    rows, columns = plane.shape
-    window = cv2.createHanningWindow((columns, rows), cv2.CV_32F)
-    tall, wide = (2 * cv2.getOptimalDFTSize((side + 1) // 2) for side in plane.shape)
+    together = _ROWS_TOGETHER if plane.shape[0] >= _ROWS_TOGETHER * _FEWEST_ROWS else 1
+    rows, columns = plane.shape[0] // together, plane.shape[1]
+    whole = plane[: rows * together]
+    flat = np.asarray(cv2.resize(whole, (columns, rows), interpolation=cv2.INTER_AREA))
+    window = np.outer(_hann(rows), _hann(columns)).astype(np.float32)
+    tall, wide = (2 * cv2.getOptimalDFTSize((side + 1) // 2) for side in flat.shape)
     padded = np.zeros((tall, wide), dtype=np.float32)
-    mean = float((plane * window).sum() / window.sum())
-    padded[:rows, :columns] = (plane - np.float32(mean)) * window
-    spectrum = np.fft.rfft2(padded)
-    return np.asarray(spectrum.real**2 + spectrum.imag**2, dtype=np.float32)
+    mean = float((flat * window).sum() / window.sum())
+    padded[:rows, :columns] = (flat - np.float32(mean)) * window
+    half = np.fft.rfft(padded, axis=1)[:, : int(_HIGHEST_CYCLES_PER_PX * wide) + 3]
+    spectrum = np.fft.fft(half, axis=0)
+    steepest = _HIGHEST_CYCLES_PER_PX * np.tan(np.deg2rad(MAX_SKEW_DEG)) * together
+    reach = min(int(np.ceil(steepest * tall)) + 3, (tall - 1) // 2)
+    near = np.concatenate([spectrum[-reach:], spectrum[: reach + 1]])
+    power = np.asarray(near.real**2 + near.imag**2, dtype=np.float32)
+    return power, 1.0 / wide, 1.0 / (tall * together)
 
 
-def _reach(count: int) -> int:
-    """Bins either side of a ray that waves turned by up to MAX_SKEW_DEG may lie at."""
-    reach = _HIGHEST_CYCLES_PER_PX * np.tan(np.deg2rad(MAX_SKEW_DEG))
-    return min(int(np.ceil(reach * count)) + 3, (count - 1) // 2)
+def _hann(count: int) -> FloatArray:
+    return np.asarray(1.0 - np.cos(2.0 * np.pi * (np.arange(count) + 0.5) / count))
 
 
-def _slab_along_x(power: FloatPlane) -> FloatPlane:
-    """Rows: y from -reach to reach; columns: x from 0 up."""
-    reach = _reach(power.shape[0])
-    return np.concatenate([power[-reach:], power[: reach + 1]])
-
-
-def _slab_along_y(power: FloatPlane) -> FloatPlane:
-    """Rows: x from -reach to reach; columns: y from 0 up."""
-    half = power.shape[0] // 2 + 1
-    reach = min(_reach(2 * (power.shape[1] - 1)), power.shape[1] - 1)
-    positive = power[:half, : reach + 1]
-    # P(-x, y) = P(x, -y) for a real picture.
-    mirrored = power[(-np.arange(half)) % power.shape[0], 1 : reach + 1]
-    return np.ascontiguousarray(np.concatenate([mirrored[:, ::-1], positive], axis=1).T)
-
-
-def _peaks(slab: FloatPlane, major_bin: float, minor_bin: float, length_px: int) -> Waves:
-    """Local maxima of a slab within the allowed turn, the clearest of them."""
+def _peaks(plane: FloatPlane) -> Waves:
+    """Local maxima within the allowed turn from the x axis, the clearest of them."""
     import cv2
 
+    slab, major_bin, minor_bin = _slab(plane)
     reach = slab.shape[0] // 2
     snr = slab / _floor(slab)
     highest = slab >= cv2.dilate(slab, np.ones((3, 5), dtype=np.uint8))
     major = np.arange(slab.shape[1]) * major_bin
-    minor = np.abs(np.arange(-reach, slab.shape[0] - reach)) * minor_bin
+    minor = np.abs(np.arange(-reach, reach + 1)) * minor_bin
     allowed = minor[:, np.newaxis] <= major * np.tan(np.deg2rad(MAX_SKEW_DEG)) + minor_bin
-    allowed &= ((major > _FEWEST_CYCLES / length_px) & (major < _HIGHEST_CYCLES_PER_PX))[np.newaxis]
-    highest &= allowed
-    highest &= snr > _FAINTEST_SNR
+    longest = _FEWEST_CYCLES / plane.shape[1]
+    allowed &= ((major > longest) & (major < _HIGHEST_CYCLES_PER_PX))[np.newaxis]
+    highest &= allowed & (snr > _FAINTEST_SNR)
     highest[[0, -1]] = False
     highest[:, [0, -1]] = False
     row, column = np.nonzero(highest)
@@ -159,11 +151,12 @@ def _floor(slab: FloatPlane) -> FloatPlane:
     flat = blocks.transpose(0, 2, 1, 3).reshape(rows, columns, tall * wide)
     middle = np.partition(flat, tall * wide // 2, axis=2)[:, :, tall * wide // 2]
     floor = cv2.resize(middle, slab.shape[::-1], interpolation=cv2.INTER_LINEAR)
-    return np.maximum(floor, np.float32(1e-9) + np.float32(1e-9) * slab.max())
+    lowest = np.float32(1e-9) * (np.float32(1.0) + slab.max())
+    return np.asarray(np.maximum(floor, lowest), dtype=np.float32)
 
 
 def _off_ray(waves: FloatArray, angle_rad: float) -> FloatArray:
-    return np.abs(waves[:, 1] * np.cos(angle_rad) - waves[:, 0] * np.sin(angle_rad))
+    return np.asarray(np.abs(waves[:, 1] * np.cos(angle_rad) - waves[:, 0] * np.sin(angle_rad)))
 
 
 def _vote(upright: Waves, level: Waves, tolerance: float) -> float:
