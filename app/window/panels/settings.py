@@ -6,6 +6,7 @@ from collections.abc import Callable
 from dataclasses import replace
 
 from PySide6.QtCore import Qt
+from PySide6.QtGui import QWheelEvent
 from PySide6.QtWidgets import QComboBox, QFrame, QHBoxLayout, QLabel, QPushButton, QWidget
 
 from app.reading import (
@@ -19,6 +20,21 @@ from app.window.document import Document
 from app.window.statements import evidence_statement
 
 _AS_LIMB_LEADS = "as limb leads"
+
+
+class ChosenOnPurpose(QComboBox):
+    """A list that neither the wheel nor arrow keys meant for the sheet can change.
+
+    What is chosen counts as confirmed, so that it must not be chosen in passing.
+    """
+
+    def __init__(self) -> None:
+        super().__init__()
+        # A click opens the list and leaves the keyboard with the sheet.
+        self.setFocusPolicy(Qt.FocusPolicy.TabFocus)
+
+    def wheelEvent(self, event: QWheelEvent) -> None:
+        event.ignore()
 
 
 class SettingField(QWidget):
@@ -37,7 +53,7 @@ class SettingField(QWidget):
         super().__init__()
         self._unit = unit
         self._choose = choose
-        self.combo = QComboBox()
+        self.combo = ChosenOnPurpose()
         self.combo.setAccessibleName(name)
         if may_be_absent:
             self.combo.addItem(_AS_LIMB_LEADS, None)
