@@ -41,6 +41,7 @@ from PySide6.QtWidgets import (
 from app.window import theme
 from app.window.panels.icons import caution_icon
 from app.window.panels.lines import Line
+from app.window.panels.steady_combo import SteadyCombo
 from app.window.panels.worksheet_rows import Row, RowId, shown_unit
 
 AnyIndex = QModelIndex | QPersistentModelIndex
@@ -381,7 +382,7 @@ class LeadDelegate(CellDelegate):
     def createEditor(
         self, parent: QWidget, _option: QStyleOptionViewItem, index: AnyIndex
     ) -> QWidget:
-        combo = QComboBox(parent)
+        combo = SteadyCombo(parent)
         row = _row_at(self._tree, index)
         if row is not None and row.line is not None:
             combo.addItems(list(self._free_leads(row.line)))

@@ -6,8 +6,7 @@ from collections.abc import Callable
 from dataclasses import replace
 
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QWheelEvent
-from PySide6.QtWidgets import QComboBox, QFrame, QHBoxLayout, QLabel, QPushButton, QWidget
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QWidget
 
 from app.reading import (
     USUAL_GAINS_MM_PER_MV,
@@ -17,24 +16,10 @@ from app.reading import (
     Setting,
 )
 from app.window.document import Document
+from app.window.panels.steady_combo import SteadyCombo
 from app.window.statements import evidence_statement
 
 _AS_LIMB_LEADS = "as limb leads"
-
-
-class ChosenOnPurpose(QComboBox):
-    """A list that neither the wheel nor arrow keys meant for the sheet can change.
-
-    What is chosen counts as confirmed, so that it must not be chosen in passing.
-    """
-
-    def __init__(self) -> None:
-        super().__init__()
-        # A click opens the list and leaves the keyboard with the sheet.
-        self.setFocusPolicy(Qt.FocusPolicy.TabFocus)
-
-    def wheelEvent(self, event: QWheelEvent) -> None:
-        event.ignore()
 
 
 class SettingField(QWidget):
@@ -53,7 +38,10 @@ class SettingField(QWidget):
         super().__init__()
         self._unit = unit
         self._choose = choose
-        self.combo = ChosenOnPurpose()
+        # What is chosen counts as confirmed, so nothing must be chosen in passing: a click opens
+        # the list and leaves the keyboard with the sheet, whose legs the arrow keys move.
+        self.combo = SteadyCombo()
+        self.combo.setFocusPolicy(Qt.FocusPolicy.TabFocus)
         self.combo.setAccessibleName(name)
         if may_be_absent:
             self.combo.addItem(_AS_LIMB_LEADS, None)
