@@ -33,9 +33,8 @@ def no_grid_scenes() -> Iterator[tuple[str, Pixels]]:
 
     The kinds of `tests.no_grid` as they are, the same as photos, and further kinds as photos.
     """
-    for name, pixels in no_grid_pictures():
-        yield f"{name}, flat", pixels
     for number, (name, pixels) in enumerate(no_grid_pictures()):
+        yield f"{name}, flat", pixels
         yield f"{name}, photo", photographed(pixels, 3000 + number)
     for number, draw in enumerate(SCENE_KINDS):
         level = draw(np.random.default_rng(4000 + number))
