@@ -196,7 +196,8 @@ class RowTree(QTreeWidget):
             if item is not None:
                 self._paint(item)
         item = self._items.get(row_id) if row_id is not None else None
-        if item is not None:
+        # Offered before, it must not be pulled into sight from under a reader who looks elsewhere.
+        if item is not None and row_id != before:
             self.scrollToItem(item)
 
     def offered(self) -> RowId | None:

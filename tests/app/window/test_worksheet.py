@@ -171,3 +171,43 @@ def test_nothing_of_the_worksheet_is_cut_off(opened: MainWindow, width_px: int) 
             seen += "±" in item.text(column)
     assert seen >= 4
     assert sum(tree.columnWidth(column) for column in Column) <= tree.viewport().width()
+
+
+def test_a_row_is_marked_and_its_figure_typed_from_the_keyboard(opened: MainWindow) -> None:
+    tree = opened.worksheet.tree
+    tree.setFocus()
+    tree.pick(("line", line_of(opened, "pr", "II").line_id, None))
+    QTest.keyClick(tree, Qt.Key.Key_F2)
+    fields = [field for field in tree.viewport().findChildren(QLineEdit) if field.isVisible()]
+    assert len(fields) == 1
+    QTest.keyClicks(fields[0], "160")
+    QTest.keyClick(fields[0], Qt.Key.Key_Return)
+    QApplication.processEvents()
+    figure = reading_of(opened).hand_figure("pr", "II")
+    assert figure is not None
+    assert figure.value == 160.0
+    QTest.keyClick(tree, Qt.Key.Key_Return)
+    assert opened.walk.is_placing
+    assert opened.walk.line == line_of(opened, "pr", "II")
+
+
+def test_a_figure_in_another_unit_is_refused_in_one_sentence(opened: MainWindow) -> None:
+    type_figure(opened, "pr", "II", "0.16 s")
+    assert reading_of(opened).hand_figure("pr", "II") is None
+    notice = opened.notices.notice("trouble")
+    assert notice is not None
+    assert notice.label.text() == "'0.16 s' is not a figure in ms: type the number alone."
+
+
+def test_a_row_picked_below_stays_in_sight(opened: MainWindow) -> None:
+    """The row offered as the next one lies far above it."""
+    opened.resize(1366, 420)
+    tree = opened.worksheet.tree
+    row_id = ("value", "qrs_axis", None)
+    item = tree.item_of(row_id)
+    assert item is not None
+    tree.scrollToItem(item)
+    place = tree.visualItemRect(item).center()
+    QTest.mouseClick(tree.viewport(), Qt.MouseButton.LeftButton, pos=place)
+    assert tree.offered() == ("line", line_of(opened, "rr", "II").line_id, None)
+    assert tree.viewport().rect().contains(tree.visualItemRect(item).center())
