@@ -98,22 +98,28 @@ class Walk(QObject):
             self.begin(line)
 
     def _opened(self, row: Row) -> None:
-        """A click on an empty line begins marking; one on a marked line only picks it."""
+        """A click on an empty line begins marking; one on a marked line shows its marks.
+
+        Either way what was being placed for another line is given up: the sheet must not ask
+        for one line while another is the current one.
+        """
         if row.line is None:
             return
-        self._line_id = row.line.line_id
-        if row.caliper_ids:
-            self._refreshed()
-        else:
+        if not row.caliper_ids:
             self.begin(row.line)
+            return
+        self._view.cancel_gesture()
+        self._line_id = row.line.line_id
+        self._show_row(row.row_id)
+        self._select(row.caliper_ids)
+        self._refreshed()
 
     def _picked(self, row: Row | None) -> None:
-        if row is None or self._following:
+        if row is None or self._following or self.is_placing:
             return
         if row.line is not None:
             self._line_id = row.line.line_id
-        if not self.is_placing:
-            self._select(row.caliper_ids)
+        self._select(row.caliper_ids)
         self._refreshed()
 
     def _select(self, caliper_ids: tuple[int, ...]) -> None:

@@ -12,6 +12,7 @@ from app.window.panels.row_tree import Column
 from tests.app.window.bench import (
     PX_PER_MM,
     cell,
+    click_cell,
     click_picture,
     line_of,
     measure,
@@ -119,6 +120,29 @@ def test_a_click_on_a_marked_line_shows_its_calipers_and_places_nothing(
     assert not opened.walk.is_placing
     (caliper,) = reading_of(opened).calipers
     assert opened.view.selected_ids() == {caliper.caliper_id}
+
+
+def test_a_click_on_a_marked_line_gives_up_what_another_was_asked_for(
+    opened: MainWindow,
+) -> None:
+    measure(opened, "qrs", "II", 300.0, 320.0)
+    pick_line(opened, "pr", "II")
+    click_picture(opened, 260.0, 300.0)
+    pick_line(opened, "qrs", "II")
+    assert not opened.walk.is_placing
+    assert opened.walk.line == line_of(opened, "qrs", "II")
+    (caliper,) = reading_of(opened).calipers
+    assert opened.view.selected_ids() == {caliper.caliper_id}
+    assert opened.prompt.text.words().startswith("QRS in lead II is marked.")
+
+
+def test_a_figure_typed_meanwhile_leaves_the_line_that_is_asked_for(opened: MainWindow) -> None:
+    measure(opened, "qrs", "II", 300.0, 320.0)
+    pick_line(opened, "pr", "II")
+    click_cell(opened, "qrs", "II", Column.HAND)
+    assert opened.walk.is_placing
+    assert opened.walk.line == line_of(opened, "pr", "II")
+    assert opened.prompt.text.words().startswith("PR, lead II")
 
 
 def test_a_caliper_picked_on_the_canvas_shows_its_line(opened: MainWindow) -> None:
