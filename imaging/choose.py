@@ -165,7 +165,10 @@ def _assumed(
     if lines - {1, 5}:
         return NOT_A_MILLIMETRE_GRID
     across = max(plane.shape) * max(pair.lengths)
-    if 5 in lines or across < _FEWEST_SQUARES_OF_1_MM:
+    if 5 in lines:
+        scale, fifths, first = 5.0, tuple(range(1, 16)), 5
+        taken = "The bold lines are not clear; the closest lines are taken as 1 mm apart."
+    elif across < _FEWEST_SQUARES_OF_1_MM:
         scale, fifths, first = 5.0, tuple(range(1, 16)), 1
         taken = "Only one line spacing is clear; it is taken as 5 mm, the large squares."
     else:

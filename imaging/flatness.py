@@ -13,7 +13,8 @@ _SPAN_MM = (5.0, 50.0)
 _SPANS = 1500
 _DEGREE = 3
 _FEWEST_TILES = 40
-_CLEARLY_SHARED = 0.6
+_SHARED_NOISE = 3.0
+_HIGH_NOISE = 3.0
 _ROUNDS = 6
 _TUKEY = 4.685
 
@@ -26,19 +27,22 @@ class Bend:
     ----------
     span_mm : float
         95th percentile of the error it gives them.
+    noise_mm : float
+        What noise alone might make of that figure in one page of twenty.
     scatter_mm : float
-        The same as one sigma of one point; zero unless it is clearly no noise.
+        The bend as one sigma of one point; zero unless it is clearly no noise.
     """
 
     span_mm: float
+    noise_mm: float
     scatter_mm: float
 
 
 def bend_of(offsets_mm: FloatArray, step_mm: float) -> Bend:
     """Measure the bending that a flat map leaves.
 
-    Two cubic surfaces are laid through the tiles, each through every second group of them,
-    and only what both say counts: noise, which they do not share, cancels on the average.
+    A cubic surface is laid through the tiles; what spans on it would have from noise alone
+    is taken off, and only the rest counts.
 
     Parameters
     ----------
@@ -49,22 +53,23 @@ def bend_of(offsets_mm: FloatArray, step_mm: float) -> Bend:
     """
     rows, columns = np.nonzero(np.isfinite(offsets_mm))
     if len(rows) < _FEWEST_TILES:
-        return Bend(0.0, 0.0)
+        return Bend(0.0, 0.0, 0.0)
     places = np.column_stack([columns, rows]).astype(np.float64)
     centre, half = places.mean(axis=0), np.maximum(np.ptp(places, axis=0) / 2.0, 1.0)
     design = _surface((places - centre) / half)
     values = offsets_mm[rows, columns]
-    # Groups of 2 by 2 alternate, so that overlapping windows mostly fall on the same side.
-    side = (rows // 2 + columns // 2) % 2 == 0
+    surface, weights, sigma_mm = _robust_fit(design, values)
     start, end = _spans(places, step_mm)
-    first, second = (
-        (design[end] - design[start]) @ _robust_fit(design[part], values[part])
-        for part in (side, ~side)
-    )
-    shared = max(float(np.mean(first * second)), 0.0)
-    noise = float(np.sqrt(np.mean(first**2) * np.mean(second**2)))
-    scatter = np.sqrt(shared / 2.0) if shared > _CLEARLY_SHARED * noise else 0.0
-    return Bend(1.96 * float(np.sqrt(shared)), float(scatter))
+    change = design[end] - design[start]
+    normal = (design * weights[:, np.newaxis]).T @ design
+    noise = np.einsum("ni,ij,nj->n", change, np.linalg.pinv(normal), change) * sigma_mm**2
+    # Half overlapping Hann windows share what makes 16 / 9 of the variance of single ones
+    # in a mean (their correlation is 1/6 each way); traces reach over more than one.
+    expected = _SHARED_NOISE * float(np.mean(noise))
+    excess = max(float(np.mean((change @ surface) ** 2)) - expected, 0.0)
+    scatter_mm = np.sqrt(excess / 2.0) if excess > 2.0 * expected else 0.0
+    noise_mm = 1.96 * np.sqrt(_HIGH_NOISE * expected)
+    return Bend(1.96 * float(np.sqrt(excess)), float(noise_mm), float(scatter_mm))
 
 
 def _surface(places: FloatArray) -> FloatArray:
@@ -73,10 +78,14 @@ def _surface(places: FloatArray) -> FloatArray:
     return np.column_stack([x**i * y**j for i, j in powers])
 
 
-def _robust_fit(design: FloatArray, values: FloatArray) -> FloatArray:
-    """Least squares with Tukey's biweight: tiles that hold much of a trace fall out."""
+def _robust_fit(design: FloatArray, values: FloatArray) -> tuple[FloatArray, FloatArray, float]:
+    """Least squares with Tukey's biweight: tiles that hold much of a trace fall out.
+
+    Returns the coefficients, the weights and one sigma of the weighted residuals.
+    """
     weights = np.ones(len(values))
     surface: FloatArray = np.zeros(design.shape[1])
+    residual = values
     for _ in range(_ROUNDS):
         root = np.sqrt(weights)
         solved = np.linalg.lstsq(design * root[:, None], values * root, rcond=1e-8)
@@ -85,7 +94,8 @@ def _robust_fit(design: FloatArray, values: FloatArray) -> FloatArray:
         sigma = max(float(np.median(np.abs(residual))) / 0.6745, 1e-9)
         ratio = residual / (_TUKEY * sigma)
         weights = np.where(np.abs(ratio) < 1.0, (1.0 - ratio**2) ** 2, 0.0)
-    return surface
+    freedom = max(float(weights.sum()) - design.shape[1], 1.0)
+    return surface, weights, float(np.sqrt((weights * residual**2).sum() / freedom))
 
 
 def _spans(places: FloatArray, step_mm: float) -> tuple[NDArray[np.int_], NDArray[np.int_]]:

@@ -24,6 +24,11 @@ _GRID_PERCENTILES = (70.0, 94.0)
 _BOLD_PERCENTILE = 93.0
 _FAINTEST_GREY_LEVELS = 1.5
 _CUT_ABOVE_BOLD = 1.25
+_PEN_STRIDE = 5
+_PEN_PERCENTILE = 99.7
+_GRID_PERCENTILE = 95.0
+_PEN_OVER_GRID = 2.0
+_PEN_CORE = 0.6
 _CUT_BELOW_PAPER = -0.3
 
 
@@ -129,9 +134,28 @@ def _darkness(light: NDArray[np.uint8]) -> FloatPlane:
     blocks = _block_percentile(plane, _BOLD_PERCENTILE)
     printed = blocks[blocks > _FAINTEST_GREY_LEVELS]
     bold = float(np.median(printed)) if printed.size else _FAINTEST_GREY_LEVELS
-    plane *= np.float32(1.0 / bold)
+    _take_out_pen(plane)
+    plane *= 1.0 / bold
     np.clip(plane, _CUT_BELOW_PAPER, _CUT_ABOVE_BOLD, out=plane)
     return plane
+
+
+def _take_out_pen(plane: FloatPlane) -> None:
+    """Put the page's mean where a pen much darker than the grid has drawn, in place.
+
+    A trace cut off at the bold lines' darkness still weighs as much as they do; at the mean
+    it weighs nothing. Where the pen is not clearly darker (one bit), nothing is changed.
+    """
+    import cv2
+
+    sample = plane[::_PEN_STRIDE, ::_PEN_STRIDE].ravel()
+    darkest, grid = np.percentile(sample, [_PEN_PERCENTILE, _GRID_PERCENTILE])
+    if darkest < _PEN_OVER_GRID * max(float(grid), _FAINTEST_GREY_LEVELS):
+        return
+    drawn = (plane > _PEN_CORE * darkest).astype(np.uint8)
+    drawn = np.asarray(cv2.dilate(drawn, np.ones((3, 3), dtype=np.uint8)), dtype=np.uint8)
+    beside = drawn == 0
+    plane[~beside] = plane[beside].mean()
 
 
 def _block_percentile(plane: NDArray[np.uint8] | FloatPlane, percentile: float) -> FloatPlane:

@@ -103,7 +103,7 @@ def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
     _log.debug("stray %.3f %.3f, bends %s", fits[0].stray, fits[1].stray, bends)
     if max(fit.stray for fit in fits) > _MOST_STRAY:
         return NOT_FLAT
-    if max(bend.span_mm for bend in bends) > bar_mm:
+    if any(bend.span_mm > np.hypot(bar_mm, bend.noise_mm) for bend in bends):
         return NOT_FLAT
     return _Fits((fits[0], fits[1]), max(bend.scatter_mm for bend in bends))
 

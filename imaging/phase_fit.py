@@ -20,8 +20,10 @@ BoolArray = NDArray[np.bool_]
 
 _PASSES = 5
 _PRESENT = 0.45
+_WHOLE = 0.85
 _TUKEY = 4.685
 _ON_MAP_MM = 0.15
+_INNER = 0.75
 _BLOCKS = 5
 
 
@@ -95,7 +97,7 @@ def fit_lines(
     lines = state.strength > 0.0
     on_map = np.abs(residual) < _ON_MAP_MM
     stray = float(1.0 - on_map[lines].mean()) if lines.any() else 1.0
-    seen = np.where(lines & on_map, residual, np.nan)
+    seen = np.where((state.strength > _INNER) & on_map, residual, np.nan)
     return LineFit(corrected, start_mm, covariance, seen.reshape(shape), amplitudes, stray)
 
 
@@ -123,7 +125,8 @@ def _offsets(values: ComplexArray, fifths: NDArray[np.int_], used: BoolArray, fi
     weight[first] = max(weight[first], 1e-12)
     turns = np.angle(turned) * 5.0 / (2.0 * np.pi * fifths)
     offsets_mm = turns @ (weight / weight.sum())
-    share = np.clip(strength / max(typical, 1e-30), 0.0, 1.0)
+    # A tile across the grid's edge sees the edge too, which turns its waves: it counts less.
+    share = np.clip((strength / max(typical, 1e-30) - _PRESENT) / (_WHOLE - _PRESENT), 0.0, 1.0)
     return _State(offsets_mm, np.where(present, share, 0.0), amplitudes)
 
 

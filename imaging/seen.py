@@ -13,6 +13,8 @@ FloatArray = NDArray[np.float64]
 BoolArray = NDArray[np.bool_]
 
 _SEEN_SHARE = 0.5
+_LEAST_SHARE = 0.25
+_MOST_SHARE = 2.5
 _CLOSED_CELLS = 5
 _FEWEST_CELLS = 9
 
@@ -60,12 +62,13 @@ def seen_cells(
     after = (np.array(shape) + 1) * cell_px - before - plane.shape
     padded = np.pad(plane, ((before, int(after[0])), (before, int(after[1]))))
     tiles = Tiles.over(padded.shape, 2 * cell_px, smooth=False)
-    share = np.zeros(tiles.shape)
-    for comb in combs:
-        share += 0.5 * _share(padded, comb, tiles, before)
+    shares = np.stack([_share(padded, comb, tiles, before) for comb in combs])
+    # Words beside the grid may chance upon one family's waves, hardly upon both.
+    seen = (shares.mean(axis=0) > _SEEN_SHARE) & (shares.min(axis=0) > _LEAST_SHARE)
+    seen &= shares.max(axis=0) < _MOST_SHARE
     closing = cv2.getStructuringElement(cv2.MORPH_RECT, (_CLOSED_CELLS, _CLOSED_CELLS))
     # Closed on a border of its own, or the picture's edge would count as grid.
-    wide = np.pad((share > _SEEN_SHARE).astype(np.uint8), _CLOSED_CELLS)
+    wide = np.pad(seen.astype(np.uint8), _CLOSED_CELLS)
     wide = np.asarray(cv2.morphologyEx(wide, cv2.MORPH_CLOSE, closing), dtype=np.uint8)
     cells = wide[_CLOSED_CELLS:-_CLOSED_CELLS, _CLOSED_CELLS:-_CLOSED_CELLS]
     return _without_crumbs(cells), cell_px
