@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from imaging.choose import Choice, choose_waves
 from imaging.errors import GridNotFound
 from imaging.flatness import bend_of
+from imaging.follow import follow_sheet
 from imaging.ink import GridInk, grid_ink
 from imaging.lock_in import Tiles
 from imaging.periods import HIGHEST_CYCLES_PER_PX
@@ -71,12 +72,11 @@ def find_grid(picture: Picture) -> SheetMap | GridNotFound:
     times = int(np.ceil(np.sqrt(ink.darkness.size / _SPECTRUM_PIXELS)))
     coarse = ink.binned(times)
     choice = choose_waves(coarse.darkness, coarse.bin_px)
-    if isinstance(choice, GridNotFound):
-        return choice
-    fits = _fit_both(ink, choice, times)
-    if isinstance(fits, GridNotFound):
-        return fits
-    return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+    flat: SheetMap | GridNotFound | _Fits = choice if isinstance(choice, GridNotFound) else _fit_both(ink, choice, times)
+    if isinstance(flat, _Fits) and isinstance(choice, Choice):
+        return _sheet_map(picture.size_px, ink.bin_px, coarse, flat, choice)
+    followed = follow_sheet(picture.size_px, ink, coarse)
+    return followed if isinstance(followed, SheetMap) else flat
 
 
 @dataclass(frozen=True, slots=True, eq=False)
