@@ -8,7 +8,7 @@ sheet's own frame). What 1 mm is, is decided on the flat drawing, as on a flat p
 from __future__ import annotations
 
 import logging
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,11 +17,11 @@ from imaging.bend import Bend
 from imaging.errors import GridNotFound
 from imaging.flat_view import FlatView, flat_view
 from imaging.ink import GridInk
-from imaging.lock_in import Tiles
+from imaging.lock_in import Tiles, lock_in
 from imaging.periods import COARSEST_PX_PER_MM, HIGHEST_CYCLES_PER_PX
 from imaging.sheet_dense import Dense, measure_dense
 from imaging.sheet_map import Coverage, SheetMap
-from imaging.sheet_offsets import offsets_of
+from imaging.sheet_offsets import Lattice, offsets_of
 from imaging.sheet_scale import SheetScale, scale_of
 from imaging.smooth_surface import smoothest
 from imaging.tile_waves import TileWaves, follow_waves
@@ -36,9 +36,20 @@ _ROUGH_TILE_PX = 64
 _ROUGH_STIFFNESS = 0.3
 _MARGIN_CYCLES = 25.0
 _ROUNDS = 8
+_PASSES = (False, False, True)
+_FASTEST_TURN_DEG_PER_MM = 0.15
+_BESIDE_TURN_MM = 4.0
+_DOTS = 0.5
+_LEAST_BEND_MM = 0.4
 _NODE_MM = 4.0
 _FEWEST_REGION_TILES = 30
 _BEYOND_MM = 8.0
+_SURE_MM = 2.0
+_GUESS_SHARE = 0.1
+_LEAST_ERROR_MM = 1e-3
+_FEWEST_CELLS = 50
+
+FOLLOWED = "The sheet is tilted or bent on the picture; its grid was followed over it."
 
 NOT_FOLLOWED = GridNotFound(
     "The grid lines could not be followed over the sheet; take the picture again from above "
@@ -69,6 +80,8 @@ def follow_sheet(
     rough = _rough_map(coarse, waves)
     if rough is None:
         return NOT_FOLLOWED
+    if _is_dots(rough.view):
+        return NOT_FOLLOWED
     scale = scale_of(rough.masked, 1.0 / rough.view.px_per_unit, rough.off_square)
     if isinstance(scale, GridNotFound):
         return scale
@@ -84,11 +97,11 @@ def follow_sheet(
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * float(px_per_mm.min())
     fifths = np.array([number for number in scale.fifths if number <= highest])
     dense: Dense | None = None
-    for _ in range(2):
+    for fine in _PASSES:
         view = flat_view(plane, field, low, high, px_per_mm)
         if view is None:
             return NOT_FOLLOWED
-        dense = measure_dense(view, fifths, scale)
+        dense = measure_dense(view, fifths, scale, fine=fine)
         if dense is None:
             return NOT_FOLLOWED
         field = _moved(field, view, dense.tiles, dense.surfaces)
@@ -121,10 +134,10 @@ def _rough_map(coarse: GridInk, waves: TileWaves) -> _Rough | None:
         view = flat_view(coarse.darkness, field, low, high, 1.0 / lengths)
         if view is None:
             return None
-        tiles = Tiles.over(view.plane.shape, _ROUGH_TILE_PX)
+        tiles = Lattice.over(view.plane.shape, _ROUGH_TILE_PX)
         surfaces, regions = [], []
         for axis in (0, 1):
-            cycles = offsets_of(view, tiles, axis, np.array([1.0]), 0).offsets
+            cycles = offsets_of(view, _ROUGH_TILE_PX, tiles, axis, np.array([1.0]), 0).offsets
             known = np.isfinite(cycles)
             surfaces.append(
                 smoothest(np.nan_to_num(cycles), known.astype(float), _ROUGH_STIFFNESS, 4)[0]
@@ -147,13 +160,13 @@ def _rough_map(coarse: GridInk, waves: TileWaves) -> _Rough | None:
     return _Rough(field, view, masked, low, high, float(lengths[1] / lengths[0]))
 
 
-def _spread(region: BoolArray, tiles: Tiles, shape: tuple[int, ...]) -> NDArray[np.float32]:
+def _spread(region: BoolArray, tiles: Lattice, shape: tuple[int, ...]) -> NDArray[np.float32]:
     """One over the middle of each tile of a region, else zero."""
     mask = np.zeros(shape, dtype=np.float32)
-    half = tiles.step_px // 2
+    side = int(tiles.step_px)
     for row, column in zip(*np.nonzero(region), strict=True):
-        top, left = row * tiles.step_px + half, column * tiles.step_px + half
-        mask[top : top + tiles.step_px + 1, left : left + tiles.step_px + 1] = 1.0
+        top, left = row * side + side // 2, column * side + side // 2
+        mask[top : top + side + 1, left : left + side + 1] = 1.0
     return mask
 
 
@@ -170,7 +183,7 @@ def _in_mm(
 
 
 def _moved(
-    field: Bend, view: FlatView, tiles: Tiles, surfaces: tuple[FloatArray, FloatArray]
+    field: Bend, view: FlatView, tiles: Lattice, surfaces: tuple[FloatArray, FloatArray]
 ) -> Bend:
     """The map corrected by offsets that were measured in tiles of its view."""
     places = np.column_stack([field.x_mm.ravel(), field.y_mm.ravel()])
@@ -184,15 +197,24 @@ def _moved(
     )
 
 
-def on_tiles(values: FloatArray, places: FloatArray, view: FlatView, tiles: Tiles) -> FloatArray:
+def on_tiles(values: FloatArray, places: FloatArray, view: FlatView, tiles: Lattice) -> FloatArray:
     """A surface given on the tiles of a view, at places of its map; held at its border."""
-    middle_px = tiles.step_px - 0.5
-    place = ((places - view.first) * view.px_per_unit - middle_px) / tiles.step_px
+    place = tiles.place_of((places - view.first) * view.px_per_unit)
     rows, columns = values.shape
     place = np.clip(place, 0.0, (columns - 1.0, rows - 1.0))
     # A Bend of these nodes interpolates them.
     nodes = Bend((0.0, 0.0), 1.0, values, values, np.full(values.shape, np.nan))
     return nodes.to_mm(place)[:, 0]
+
+
+def _is_dots(view: FlatView) -> bool:
+    """Whether what was followed are dots: their wave comes and goes along the lines too."""
+    along = np.diag(1.0 / view.px_per_unit)
+    waves = np.stack([along[0], along[1], along[0] + along[1], along[0] - along[1]])
+    tiles = Tiles.over((view.plane.shape[0], view.plane.shape[1]), _ROUGH_TILE_PX)
+    power = np.abs(lock_in(view.plane, waves, tiles)) ** 2
+    first, second, *both = np.sqrt(np.median(power.reshape(-1, 4), axis=0))
+    return bool(min(both) > _DOTS * min(first, second))
 
 
 def _sheet_map(
@@ -202,50 +224,87 @@ def _sheet_map(
     view: FlatView,
     dense: Dense,
     scale: SheetScale,
-) -> SheetMap:
-    # Working pixel p lies at bin * p + (bin - 1) / 2 in the picture.
-    places = np.column_stack([field.x_mm.ravel(), field.y_mm.ravel()])
-    shape = field.x_mm.shape
-    errors = on_tiles(dense.errors_mm, places, view, dense.tiles).reshape(shape)
-    depth_mm = on_tiles(dense.outside_mm, places, view, dense.tiles).reshape(shape)
-    errors = np.hypot(np.maximum(errors, 1e-3), 0.1 * np.maximum(depth_mm - 3.0, 0.0))
-    limits = view.first + (np.array(view.plane.shape[::-1]) - 1.0) / view.px_per_unit
-    within = ((places >= view.first) & (places <= limits)).all(axis=1).reshape(shape)
-    errors[~within | (depth_mm > _BEYOND_MM)] = np.nan
-    first = (bin_px - 1) / 2.0 + bin_px * np.array(field.first_px)
-    bend = Bend((float(first[0]), float(first[1])), bin_px * field.pitch_px, field.x_mm, field.y_mm, errors)
-    # Cells
-    cell_px = max(4, round(bend.pitch_px / 2.0))
-    rows, columns = (-(-side // cell_px) for side in size_px[::-1])
-    cx, cy = np.meshgrid((np.arange(columns) + 0.5) * cell_px - 0.5, (np.arange(rows) + 0.5) * cell_px - 0.5)
-    cells_px = np.column_stack([cx.ravel(), cy.ravel()])
-    cell_mm = bend.to_mm(cells_px)
-    middle_px = dense.tiles.step_px - 0.5
-    at = np.rint(((cell_mm - view.first) * view.px_per_unit - middle_px) / dense.tiles.step_px).astype(int)
-    tall, wide = dense.covered.shape
-    inside = (at >= 0).all(axis=1) & (at < (wide, tall)).all(axis=1)
-    cells = np.zeros(len(at), dtype=bool)
-    cells[inside] = dense.covered[at[inside, 1], at[inside, 0]]
-    cells &= np.isfinite(bend.errors_mm(cells_px))
-    covered_px, covered_mm = cells_px[cells], cell_mm[cells]
-    if len(covered_px) < 50:
+) -> SheetMap | GridNotFound:
+    bend = _with_errors(field, view, dense, bin_px)
+    coverage = _coverage(size_px, bend, view, dense)
+    cells = coverage.cells()
+    if int(cells.sum()) < _FEWEST_CELLS:
         return NOT_FOLLOWED
-    middle_mm = covered_mm.mean(axis=0)
+    covered_px = _cell_centres_px(cells.shape, coverage.cell_px)[cells.ravel()]
+    covered_mm = bend.to_mm(covered_px)
     shift_mm = 5.0 * np.round(covered_mm.min(axis=0) / 5.0)
-    bend = Bend(bend.first_px, bend.pitch_px, bend.x_mm - shift_mm[0], bend.y_mm - shift_mm[1], bend.standard_error_mm)
-    design = np.column_stack([np.ones(len(covered_mm)), covered_mm - shift_mm])
+    bend = replace(bend, x_mm=bend.x_mm - shift_mm[0], y_mm=bend.y_mm - shift_mm[1])
+    covered_mm = covered_mm - shift_mm
+    design = np.column_stack([np.ones(len(covered_mm)), covered_mm])
     affine = np.linalg.lstsq(design, covered_px, rcond=None)[0]
-    del middle_mm
-    scatter = float(np.median(bend.errors_mm(covered_px)))
+    off_px = np.hypot(*(design @ affine - covered_px).T)
+    bent_mm = float(np.percentile(off_px, 95.0) / np.hypot(*affine[1]))
+    if not scale.certain and bent_mm < _LEAST_BEND_MM:
+        # Flat enough for the search on flat pages, which did not find a grid in these lines.
+        return NOT_FOLLOWED
+    origin, x_step, y_step = ((float(row[0]), float(row[1])) for row in affine)
     return SheetMap(
         picture_size_px=size_px,
-        origin_px=(float(affine[0, 0]), float(affine[0, 1])),
-        x_step_px=(float(affine[1, 0]), float(affine[1, 1])),
-        y_step_px=(float(affine[2, 0]), float(affine[2, 1])),
-        covariance=tuple((0.0,) * 6 for _ in range(6)),
-        scatter_mm=scatter,
-        coverage=Coverage.from_cells(cells.reshape(rows, columns), float(cell_px)),
+        origin_px=origin,
+        x_step_px=x_step,
+        y_step_px=y_step,
+        covariance=((0.0,) * 6,) * 6,
+        scatter_mm=float(np.median(bend.errors_mm(covered_px))),
+        coverage=coverage,
         scale_is_certain=scale.certain,
-        evidence=(*scale.evidence, "The sheet is tilted or bent; its grid was followed over it."),
+        evidence=(*scale.evidence, FOLLOWED),
         bend=bend,
     )
+
+
+def _with_errors(field: Bend, view: FlatView, dense: Dense, bin_px: int) -> Bend:
+    """The map in picture_px, with its errors: growing beyond what was seen, at last unknown."""
+    places = np.column_stack([field.x_mm.ravel(), field.y_mm.ravel()])
+    shape = field.x_mm.shape
+    seen_mm = on_tiles(dense.errors_mm, places, view, dense.tiles).reshape(shape)
+    away_mm = on_tiles(dense.outside_mm, places, view, dense.tiles).reshape(shape)
+    guessed_mm = _GUESS_SHARE * np.maximum(away_mm - _SURE_MM, 0.0)
+    errors = np.hypot(np.maximum(seen_mm, _LEAST_ERROR_MM), guessed_mm)
+    last = view.first + (np.array(view.plane.shape[::-1]) - 1.0) / view.px_per_unit
+    within = ((places >= view.first) & (places <= last)).all(axis=1).reshape(shape)
+    errors[~within | (away_mm > _BEYOND_MM)] = np.nan
+    # Working pixel p lies at bin * p + (bin - 1) / 2 in the picture.
+    x_px, y_px = (bin_px * first + (bin_px - 1) / 2.0 for first in field.first_px)
+    return Bend((x_px, y_px), bin_px * field.pitch_px, field.x_mm, field.y_mm, errors)
+
+
+def _cell_centres_px(shape: tuple[int, ...], cell_px: float) -> FloatArray:
+    y, x = ((np.arange(count) + 0.5) * cell_px - 0.5 for count in shape)
+    across, down = np.meshgrid(x, y)
+    return np.column_stack([across.ravel(), down.ravel()])
+
+
+def _coverage(size_px: tuple[int, int], bend: Bend, view: FlatView, dense: Dense) -> Coverage:
+    """Cells of the picture on covered tiles; one sheet only, where its lines do not jump."""
+    import cv2
+
+    cell_px = float(max(4, round(bend.pitch_px / 2.0)))
+    shape = (int(np.ceil(size_px[1] / cell_px)), int(np.ceil(size_px[0] / cell_px)))
+    centres_px = _cell_centres_px(shape, cell_px)
+    place = dense.tiles.place_of((bend.to_mm(centres_px) - view.first) * view.px_per_unit)
+    at = np.rint(np.clip(place, -9.0, 1e6)).astype(np.int64)
+    inside = (at >= 0).all(axis=1) & (at < dense.covered.shape[::-1]).all(axis=1)
+    cells = np.zeros(len(at), dtype=bool)
+    cells[inside] = dense.covered[at[inside, 1], at[inside, 0]]
+    cells &= np.isfinite(bend.errors_mm(centres_px))
+    slopes = bend.mm_per_px(centres_px)
+    # Where one sheet ends on another, the joined map turns at once; a fold or curl does not.
+    turn = np.unwrap(
+        np.arctan2(slopes[:, 1, 0] - slopes[:, 0, 1], slopes[:, 0, 0] + slopes[:, 1, 1])
+    ).reshape(shape)
+    mm_per_px = np.sqrt(np.abs(np.linalg.det(slopes))).reshape(shape)
+    speed = np.hypot(*np.gradient(turn, cell_px)) / np.maximum(mm_per_px, 1e-9)
+    jumps = (np.rad2deg(speed) > _FASTEST_TURN_DEG_PER_MM) & cells.reshape(shape)
+    reach = 1 + 2 * max(1, round(_BESIDE_TURN_MM * float(np.median(1.0 / mm_per_px)) / cell_px))
+    near = cv2.dilate(jumps.astype(np.uint8), np.ones((reach, reach), dtype=np.uint8))
+    kept = (cells.reshape(shape) & (near == 0)).astype(np.uint8)
+    count, labels, stats, _ = cv2.connectedComponentsWithStats(kept, connectivity=4)
+    if count < 2:
+        return Coverage.from_cells(np.zeros(shape, dtype=bool), cell_px)
+    largest = 1 + int(np.argmax(stats[1:, cv2.CC_STAT_AREA]))
+    return Coverage.from_cells(labels == largest, cell_px)

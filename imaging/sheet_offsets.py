@@ -36,8 +36,58 @@ class Offsets:
     values: ComplexArray
 
 
+@dataclass(frozen=True, slots=True, eq=False)
+class Lattice:
+    """Centres of tiles on a view: the first, their distance, and how many."""
+
+    first_px: float
+    step_px: float
+    shape: tuple[int, int]
+
+    @classmethod
+    def over(cls, plane_shape: tuple[int, ...], side_px: int, *, fine: bool = False) -> Lattice:
+        """Windows of about this side, half a window apart, or with `fine` a quarter."""
+        tiles = Tiles.over((plane_shape[0], plane_shape[1]), _even(side_px))
+        rows, columns = tiles.shape
+        if not fine:
+            return cls(tiles.step_px - 0.5, float(tiles.step_px), (rows, columns))
+        shape = (2 * rows - 1, 2 * columns - 1)
+        return cls(tiles.step_px - 0.5, tiles.step_px / 2.0, shape)
+
+    def centres_px(self) -> FloatArray:
+        """x and y of the centres, shape (rows, columns, 2)."""
+        y_px, x_px = (self.first_px + np.arange(count) * self.step_px for count in self.shape)
+        return np.stack(np.meshgrid(x_px, y_px), axis=-1)
+
+    def place_of(self, points_px: FloatArray) -> FloatArray:
+        """Column and row of points of the view, (N, 2) -> (N, 2)."""
+        return np.asarray((points_px - self.first_px) / self.step_px)
+
+
+def _even(side_px: int) -> int:
+    return max(4, 4 * round(side_px / 4))
+
+
+def _lock_in(view: FlatView, waves: FloatArray, side_px: int, lattice: Lattice) -> ComplexArray:
+    """The windows of a lattice; a fine one in four goes, each half a step on."""
+    plane = view.plane
+    tiles = Tiles.over((plane.shape[0], plane.shape[1]), _even(side_px))
+    if lattice.step_px == tiles.step_px:
+        return lock_in(plane, waves, tiles)
+    half = tiles.step_px // 2
+    result = np.empty((*lattice.shape, len(waves)), dtype=np.complex128)
+    for down in (0, 1):
+        for across in (0, 1):
+            target = result[down::2, across::2]
+            part = Tiles(tiles.step_px, (target.shape[0], target.shape[1]))
+            found = lock_in(plane[down * half :, across * half :], waves, part)
+            turn = np.exp(-2j * np.pi * (waves @ (across * half, down * half)))
+            result[down::2, across::2] = found * turn
+    return result
+
+
 def offsets_of(
-    view: FlatView, tiles: Tiles, axis: int, multiples: FloatArray, first: int
+    view: FlatView, side_px: int, lattice: Lattice, axis: int, multiples: FloatArray, first: int
 ) -> Offsets:
     """Measure one family (axis 0: upright lines) at multiples of one cycle to a unit.
 
@@ -45,7 +95,7 @@ def offsets_of(
     """
     waves = np.zeros((len(multiples), 2))
     waves[:, axis] = multiples / view.px_per_unit[axis]
-    values = lock_in(view.plane, waves, tiles)
+    values = _lock_in(view, waves, side_px, lattice)
     values = values * np.exp(-2j * np.pi * multiples * view.first[axis])
     strength = np.abs(values[:, :, first])
     typical = float(np.percentile(strength[strength > 0.0], _TYPICAL_PERCENTILE, method="lower"))
