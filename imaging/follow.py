@@ -62,17 +62,15 @@ TOO_COARSE = GridNotFound(
 )
 
 
-def follow_sheet(
-    size_px: tuple[int, int], ink: GridInk, coarse: GridInk
-) -> SheetMap | GridNotFound:
+def follow_sheet(size_px: tuple[int, int], coarse: GridInk) -> SheetMap | GridNotFound:
     """Find a grid that no single scale and angle fits.
 
     Parameters
     ----------
     size_px : (int, int)
         Width and height of the picture.
-    ink, coarse : GridInk
-        The working plane, and the same binned for the search.
+    coarse : GridInk
+        The plane of darkness, binned to about four million pixels.
     """
     waves = follow_waves(coarse.darkness)
     if waves is None:
@@ -82,31 +80,54 @@ def follow_sheet(
         return NOT_FOLLOWED
     if _is_dots(rough.view):
         return NOT_FOLLOWED
-    scale = scale_of(rough.masked, 1.0 / rough.view.px_per_unit, rough.off_square)
+    waves_per_px = 1.0 / rough.view.px_per_unit
+    across_cycles = rough.high - rough.low - 2.0 * _MARGIN_CYCLES
+    scale = scale_of(rough.masked, waves_per_px, rough.off_square, across_cycles)
     if isinstance(scale, GridNotFound):
         return scale
-    times = coarse.bin_px // ink.bin_px
     per_cycle = 5.0 / np.array(scale.followed_fifths)
     px_per_mm = rough.view.px_per_unit / per_cycle
     if float(px_per_mm.min()) * coarse.bin_px < COARSEST_PX_PER_MM:
         return TOO_COARSE
     plane = coarse.darkness
-    del times
     field = _in_mm(rough.field, per_cycle, plane.shape, float(px_per_mm.mean()))
     low, high = rough.low * per_cycle, rough.high * per_cycle
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * float(px_per_mm.min())
     fifths = np.array([number for number in scale.fifths if number <= highest])
-    dense: Dense | None = None
+    if not all(first in fifths for first in scale.first):
+        return TOO_COARSE
+    found = _corrected(plane, field, _Window(low, high, px_per_mm), fifths, scale)
+    if found is None:
+        return NOT_FOLLOWED
+    return _sheet_map(size_px, coarse.bin_px, *found, scale)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class _Window:
+    """The part of the sheet that is drawn, in mm, and how finely."""
+
+    low: FloatArray
+    high: FloatArray
+    px_per_mm: FloatArray
+
+
+def _corrected(
+    plane: NDArray[np.float32],
+    field: Bend,
+    window: _Window,
+    fifths: NDArray[np.int_],
+    scale: SheetScale,
+) -> tuple[Bend, FlatView, Dense] | None:
+    """Correct the map by all waves of the lines, at last in tiles that lie closer."""
+    found = None
     for fine in _PASSES:
-        view = flat_view(plane, field, low, high, px_per_mm)
-        if view is None:
-            return NOT_FOLLOWED
-        dense = measure_dense(view, fifths, scale, fine=fine)
-        if dense is None:
-            return NOT_FOLLOWED
+        view = flat_view(plane, field, window.low, window.high, window.px_per_mm)
+        dense = None if view is None else measure_dense(view, fifths, scale, fine=fine)
+        if view is None or dense is None:
+            return None
         field = _moved(field, view, dense.tiles, dense.surfaces)
-    assert dense is not None
-    return _sheet_map(size_px, coarse.bin_px, field, view, dense, scale)
+        found = (field, view, dense)
+    return found
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -170,9 +191,7 @@ def _spread(region: BoolArray, tiles: Lattice, shape: tuple[int, ...]) -> NDArra
     return mask
 
 
-def _in_mm(
-    field: Bend, per_cycle: FloatArray, shape: tuple[int, ...], px_per_mm: float
-) -> Bend:
+def _in_mm(field: Bend, per_cycle: FloatArray, shape: tuple[int, ...], px_per_mm: float) -> Bend:
     """The map in millimetres on finer nodes over the whole plane."""
     pitch_px = float(max(2.0, round(_NODE_MM * px_per_mm)))
     columns, rows = (int(np.ceil((side - 1) / pitch_px)) + 1 for side in shape[::-1])
@@ -187,7 +206,9 @@ def _moved(
 ) -> Bend:
     """The map corrected by offsets that were measured in tiles of its view."""
     places = np.column_stack([field.x_mm.ravel(), field.y_mm.ravel()])
-    shift = [on_tiles(surface, places, view, tiles).reshape(field.x_mm.shape) for surface in surfaces]
+    shift = [
+        on_tiles(surface, places, view, tiles).reshape(field.x_mm.shape) for surface in surfaces
+    ]
     return Bend(
         field.first_px,
         field.pitch_px,

@@ -72,11 +72,13 @@ def find_grid(picture: Picture) -> SheetMap | GridNotFound:
     times = int(np.ceil(np.sqrt(ink.darkness.size / _SPECTRUM_PIXELS)))
     coarse = ink.binned(times)
     choice = choose_waves(coarse.darkness, coarse.bin_px)
-    flat: SheetMap | GridNotFound | _Fits = choice if isinstance(choice, GridNotFound) else _fit_both(ink, choice, times)
-    if isinstance(flat, _Fits) and isinstance(choice, Choice):
-        return _sheet_map(picture.size_px, ink.bin_px, coarse, flat, choice)
-    followed = follow_sheet(picture.size_px, ink, coarse)
-    return followed if isinstance(followed, SheetMap) else flat
+    fits = choice if isinstance(choice, GridNotFound) else _fit_both(ink, choice, times)
+    if not isinstance(choice, GridNotFound) and not isinstance(fits, GridNotFound):
+        return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+    followed = follow_sheet(picture.size_px, coarse)
+    if isinstance(followed, SheetMap) or isinstance(choice, GridNotFound):
+        return followed if isinstance(followed, SheetMap) else choice
+    return NOT_FLAT
 
 
 @dataclass(frozen=True, slots=True, eq=False)

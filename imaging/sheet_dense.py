@@ -68,9 +68,12 @@ def measure_dense(
     px_per_mm = float(view.px_per_unit.mean())
     side_px = round(_TILE_MM * px_per_mm)
     tiles = Lattice.over(view.plane.shape, side_px, fine=fine)
-    both = [_family(view, side_px, tiles, axis, fifths, scale) for axis in (0, 1)]
-    if both[0] is None or both[1] is None:
-        return None
+    both = []
+    for axis in (0, 1):
+        family = _family(view, side_px, tiles, axis, fifths, scale)
+        if family is None:
+            return None
+        both.append(family)
     seen = both[0].seen & both[1].seen
     surfaces, errors, good = [], [], seen
     for family in both:

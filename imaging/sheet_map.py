@@ -177,7 +177,7 @@ class SheetMap:
         with the grid's own scatter added. On a bent sheet NaN where the grid was not followed.
         """
         if self.bend is not None:
-            return np.sqrt(2.0) * self._bend_errors_mm(self.bend, points_px)
+            return np.asarray(np.sqrt(2.0) * self._bend_errors_mm(self.bend, points_px))
         mm = self.to_mm(points_px)
         weights = np.column_stack([np.ones(len(mm)), mm])
         per_axis = self._axis_errors_mm(weights)

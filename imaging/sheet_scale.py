@@ -22,7 +22,8 @@ _log = logging.getLogger(__name__)
 MOST_FIFTHS = 12
 _LEAST_SHARE = 0.015
 _MOST_OFF_SQUARE = 0.3
-_FEWEST_SQUARES_OF_1_MM = 55.0
+# A3 paper has 84 large squares along its longer side, a short strip 100 small ones.
+_FEWEST_SQUARES_OF_1_MM = 85.0
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,7 +50,9 @@ class SheetScale:
     evidence: tuple[str, ...]
 
 
-def scale_of(plane: FloatPlane, waves: FloatArray, off_square: float) -> SheetScale | GridNotFound:
+def scale_of(
+    plane: FloatPlane, waves: FloatArray, off_square: float, across_cycles: FloatArray
+) -> SheetScale | GridNotFound:
     """Hold a sheet drawn flat against 1 mm lines with every fifth bold.
 
     Parameters
@@ -60,10 +63,14 @@ def scale_of(plane: FloatPlane, waves: FloatArray, off_square: float) -> SheetSc
         Cycles per pixel of the followed waves, across upright and across level lines.
     off_square : float
         Length of the level lines' wave over the upright lines' on the picture.
+    across_cycles : ndarray of float64, shape (2,)
+        Extent of what was followed, in cycles of the waves.
     """
     profiles = profiles_of(plane, 0.0)
     bold = _with_bold(profiles, waves, off_square)
-    return bold if bold is not None else _with_one_spacing(plane, profiles, waves, off_square)
+    return (
+        bold if bold is not None else _with_one_spacing(profiles, waves, off_square, across_cycles)
+    )
 
 
 def _with_bold(
@@ -84,9 +91,7 @@ def _with_bold(
     _log.debug("thin and bold lines: %s", pairs)
     if len(pairs) > 1:
         # Two ways to read the lines: the clearer one only if it is much clearer.
-        pairs.sort(
-            key=lambda pair: -min(both[0][pair[0]].bold_clear, both[1][pair[1]].bold_clear)
-        )
+        pairs.sort(key=lambda pair: -min(both[0][pair[0]].bold_clear, both[1][pair[1]].bold_clear))
     return SheetScale(
         pairs[0],
         tuple(range(1, 16)),
@@ -97,10 +102,10 @@ def _with_bold(
 
 
 def _with_one_spacing(
-    plane: FloatPlane,
     profiles: tuple[Profiles, Profiles],
     waves: FloatArray,
     off_square: float,
+    across_cycles: FloatArray,
 ) -> SheetScale | GridNotFound:
     """Plain lines of one spacing both ways: the longest that shows no longer period."""
     both: list[dict[int, Ruling]] = []
@@ -123,7 +128,7 @@ def _with_one_spacing(
         lines = {both[0][i].lines_per_cycle, both[1][j].lines_per_cycle}
         if lines - {1, 5}:
             return NOT_A_MILLIMETRE_GRID
-        across = max(plane.shape[1] * waves[0] / i, plane.shape[0] * waves[1] / j)
+        across = max(across_cycles[0] / i, across_cycles[1] / j)
         if 5 in lines or across < _FEWEST_SQUARES_OF_1_MM:
             return SheetScale(
                 (i, j),

@@ -51,7 +51,7 @@ def smoothest(
 
 def bending(shape: tuple[int, ...]) -> Any:
     """Sparse matrix B of the sum of squared second differences, ``s B s``."""
-    import scipy.sparse as sparse
+    from scipy import sparse
 
     rows, columns = shape
     second = [_differences(count, 2) for count in shape]
@@ -64,7 +64,7 @@ def bending(shape: tuple[int, ...]) -> Any:
 
 def solved(plate: Any, weights: FloatArray, values: FloatArray) -> FloatArray:
     """Solve ``(diag(weights) + plate) s = weights * values``."""
-    import scipy.sparse as sparse
+    from scipy import sparse
     from scipy.sparse.linalg import splu
 
     weight = weights.ravel() + _STIFF_EVERYWHERE * float(weights.max())
@@ -75,7 +75,7 @@ def solved(plate: Any, weights: FloatArray, values: FloatArray) -> FloatArray:
 
 
 def _differences(count: int, order: int) -> Any:
-    import scipy.sparse as sparse
+    from scipy import sparse
 
     steps = {1: (-1.0, 1.0), 2: (1.0, -2.0, 1.0)}[order]
     return sparse.diags(steps, list(range(order + 1)), shape=(count - order, count))

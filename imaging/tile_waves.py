@@ -130,14 +130,15 @@ def _floor(power: FloatPlane) -> FloatPlane:
     flat = blocks.transpose(0, 2, 1, 3).reshape(rows, columns, -1)
     middle = np.partition(flat, flat.shape[2] // 2, axis=2)[:, :, flat.shape[2] // 2]
     grown = cv2.resize(middle, power.shape[::-1], interpolation=cv2.INTER_LINEAR)
-    return np.maximum(np.asarray(grown), np.float32(1e-9) + np.float32(1e-7) * power.max())
+    least = np.float32(1e-9) + np.float32(1e-7) * power.max()
+    return np.asarray(np.maximum(np.asarray(grown), least), dtype=np.float32)
 
 
 def _frequencies(spectra: _Spectra) -> tuple[FloatArray, FloatArray]:
     size = spectra.snr.shape[2]
     y = np.fft.fftfreq(size)[:, np.newaxis]
     x = ((np.arange(spectra.snr.shape[3]) - _MIRRORED) / size)[np.newaxis]
-    return x, y
+    return np.asarray(x, dtype=np.float64), np.asarray(y, dtype=np.float64)
 
 
 def _peaks(spectra: _Spectra, family: int) -> tuple[FloatArray, FloatArray]:
@@ -177,7 +178,9 @@ def _fine(spectra: _Spectra, row: int, column: int, at: tuple[int, int]) -> Floa
     power = spectra.power[row, column]
     size = power.shape[0]
     down, across = at
-    column_logs = np.log(np.maximum(power[[(down - 1) % size, down, (down + 1) % size], across], 1e-20))
+    column_logs = np.log(
+        np.maximum(power[[(down - 1) % size, down, (down + 1) % size], across], 1e-20)
+    )
     last = power.shape[1] - 1
     beside = [max(across - 1, 0), across, min(across + 1, last)]
     row_logs = np.log(np.maximum(power[down, beside], 1e-20))
@@ -186,7 +189,7 @@ def _fine(spectra: _Spectra, row: int, column: int, at: tuple[int, int]) -> Floa
     if y > size / 2:
         y -= size
     wave = np.array([x, y]) / size
-    return wave if wave[np.argmax(np.abs(wave))] > 0 else -wave
+    return np.asarray(wave if wave[np.argmax(np.abs(wave))] > 0 else -wave)
 
 
 def _between(logs: FloatPlane) -> float:

@@ -31,7 +31,7 @@ def field_of(waves: TileWaves) -> Bend:
 
 
 def _added_up(waves: TileWaves, family: int) -> FloatArray:
-    import scipy.sparse as sparse
+    from scipy import sparse
     from scipy.sparse.linalg import splu
 
     border = ((_BORDER_NODES, _BORDER_NODES), (_BORDER_NODES, _BORDER_NODES), (0, 0))

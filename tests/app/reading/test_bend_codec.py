@@ -21,9 +21,7 @@ def _bent_reading() -> Any:
     assert sheet_map.bend is not None
     errors = sheet_map.bend.standard_error_mm.copy()
     errors[0, 0] = errors[3, 5] = np.nan
-    bend = Bend(
-        (1.5, -2.25), 31.7, sheet_map.bend.x_mm, sheet_map.bend.y_mm, errors
-    )
+    bend = Bend((1.5, -2.25), 31.7, sheet_map.bend.x_mm, sheet_map.bend.y_mm, errors)
     return replace(example_reading(), sheet_map=replace(sheet_map, bend=bend))
 
 
