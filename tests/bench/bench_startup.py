@@ -90,8 +90,11 @@ class Startup:
 def x_server() -> Iterator[str]:
     """A virtual screen of our own; its display."""
     reading_end, writing_end = os.pipe()
+    # By itself the server starts anew whenever its last client has gone, and refuses those who
+    # come meanwhile.
+    options = ["-screen", "0", SCREEN, "-nolisten", "tcp", "-noreset"]
     with subprocess.Popen(
-        ["Xvfb", "-displayfd", str(writing_end), "-screen", "0", SCREEN, "-nolisten", "tcp"],
+        ["Xvfb", "-displayfd", str(writing_end), *options],
         pass_fds=[writing_end],
         stderr=subprocess.DEVNULL,
     ) as server:
