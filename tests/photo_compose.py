@@ -160,6 +160,8 @@ def _cast_shadow(canvas: Canvas, view: View, lamp: FloatArray) -> None:
     _, finest = view.px_per_mm(5)
     reach_px = 2.5 * finest
     outline = view.outline_px() - lamp[:2] * reach_px
+    if not (np.isfinite(outline).all() and np.isfinite(reach_px)):
+        return  # a sheet that reaches behind the camera
     low = np.maximum(outline.min(axis=0) - 4 * reach_px, 0).astype(int)
     high = np.minimum(outline.max(axis=0) + 4 * reach_px, (width_px, height_px)).astype(int)
     if (high <= low).any():
