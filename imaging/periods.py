@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from imaging.profiles import Amplitudes, Profiles
+from imaging.profiles import Amplitudes, ComplexArray, Profiles
 from imaging.spectrum import Waves
 
 FloatArray = NDArray[np.float64]
@@ -22,12 +22,11 @@ HIGHEST_CYCLES_PER_PX = 0.47
 SQUARE_TOLERANCE = 0.045
 COARSEST_PX_PER_MM = 3.0
 _MOST_HARMONICS = 3.0
-_THIN_OVER_BOLD = (1.35, 25.0)
+_FAINTEST_THIN = 0.015
+_THIN_ALONE = 45.0
 _LEAST_SHARE = 0.004
 _IN_STEP = 0.85
 _IN_STEP_UP_TO = 12
-_RAISED = 1.15
-_HALF_LINES = 1.2
 _CLEAR = 5.0
 _LONGER_PERIOD = 0.2
 _TENTHS = 10.0
@@ -72,6 +71,8 @@ class Fifths:
         Share of waves that only a longer period than five squares explains.
     share : float
         How much of the picture's variance the lines are.
+    faintest_thin : float
+        Height of the faintest of the four thin lines over that of the bold one.
     """
 
     seen: bool
@@ -81,6 +82,7 @@ class Fifths:
     bold_line: int
     longer: float
     share: float
+    faintest_thin: float
 
     @property
     def has_bold(self) -> bool:
@@ -90,7 +92,7 @@ class Fifths:
     @property
     def is_ecg(self) -> bool:
         """Thin lines, every fifth bold, and nothing of a longer period."""
-        thin = _THIN_OVER_BOLD[0] < self.thin_over_bold < _THIN_OVER_BOLD[1]
+        thin = self.faintest_thin > _FAINTEST_THIN and self.thin_over_bold < _THIN_ALONE
         printed = self.seen and self.share > _LEAST_SHARE
         return printed and thin and self.has_bold and self.longer < _LONGER_PERIOD
 
@@ -142,7 +144,7 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
     found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS]))
     one = int(_TENTHS) - 1
     if most <= one:
-        return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0)
+        return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0, 0.0)
     square, error = abs(found.values[one]), float(found.errors[one])
     seen = bool(square > _CLEAR * error and found.coherence[one] > 0.5)
     # Counted from the line nearest the start, so that thin lines stand at whole numbers.
@@ -166,25 +168,39 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
         line,
         _longer(found, number, most),
         2.0 * float((np.abs(found.values[1:most:2]) ** 2).sum()) / profiles.variance,
+        _faintest_thin(values * np.exp(2j * np.pi * tenths * line), number),
     )
 
 
 def _thin_over_bold(strength: FloatArray, errors: FloatArray, number: NDArray[np.int_]) -> float:
-    """Strength at one square over its neighbours a fifth away, cautiously.
+    """Strength at one square over its neighbours a fifth away, cautiously."""
+    near = [tenth - 1 for tenth in (8, 12) if tenth in number]
+    bold = float(np.mean(strength[near]) + 2.0 * np.max(errors[near]))
+    return float(strength[9] - 2.0 * errors[9]) / max(bold, 1e-30)
 
-    Where that is raised a little, the same at half a square decides: there a broad bold
-    line's own wave fades. Alone it would take lines at half squares for thin ones.
+
+def _faintest_thin(values: ComplexArray, number: NDArray[np.int_]) -> float:
+    """Height of the faintest of the four thin lines over the bold one's, from the fold.
+
+    The waves at fifths, put together again, are the mean of all large squares; each thin
+    line is held against the paper half a square further from the bold one. A drawn baseline
+    may fill one place, not four.
     """
-    ratios = []
-    for centre in (10, 20):
-        near = [tenth - 1 for tenth in (centre - 2, centre + 2) if tenth in number]
-        if centre in number and near:
-            bold = float(np.mean(strength[near]) + 2.0 * np.max(errors[near]))
-            square = float(strength[centre - 1] - 2.0 * errors[centre - 1])
-            ratios.append(square / max(bold, 1e-30))
-    if len(ratios) < 2 or ratios[0] < _RAISED or strength[19] > _HALF_LINES * strength[9]:
-        return ratios[0] if ratios else 0.0
-    return max(ratios)
+    fifths = number[1::2] // 2
+    # Tapered, so that a sharp bold line does not ring over its neighbours.
+    taper = 0.5 + 0.5 * np.cos(np.pi * fifths / (len(fifths) + 1.0))
+
+    def height(place: float) -> float:
+        turned = values[1::2] * np.exp(2j * np.pi * fifths * place / 5.0)
+        return float((taper * turned.real).sum())
+
+    thin = [
+        height(1.0) - height(1.5),
+        height(2.0) - 0.5 * (height(1.5) + height(2.5)),
+        height(3.0) - 0.5 * (height(2.5) + height(3.5)),
+        height(4.0) - height(3.5),
+    ]
+    return min(thin) / max(height(0.0) - height(2.5), 1e-30)
 
 
 def _longer(found: Amplitudes, number: NDArray[np.int_], most: int) -> float:
