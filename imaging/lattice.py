@@ -8,10 +8,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from imaging.choose import Choice, choose_waves
+from imaging.choose import TOO_SMALL, Choice, choose_waves
 from imaging.errors import GridNotFound
 from imaging.flatness import bend_of
-from imaging.ink import GridInk, grid_ink
+from imaging.ink import GridInk, grid_ink, is_two_level
 from imaging.lock_in import Tiles
 from imaging.periods import HIGHEST_CYCLES_PER_PX
 from imaging.phase_fit import LineFit, fit_lines
@@ -28,17 +28,16 @@ _SPECTRUM_PIXELS = 4_200_000
 _TILE_MM = 15.0
 _SMALL_TILE_MM = 10.0
 _COVERAGE_WAVES = 4
+# Measured on drawn pages (tests/measure_grid.py): what remains where tiles agree too well.
+_SAMPLING_PX = 0.01
+_TWO_LEVEL_PX = 0.08
 _MOST_STRAY = 0.15
+_ASIDE = 0.33
 # The bars of a span of 5 to 50 mm: half a millisecond, or one on a coarse scan, at 25 mm/s.
 _BAR_MM = 0.0125
 _COARSE_BAR_MM = 0.025
 _COARSE_PX_PER_MM = 5.0
 
-TOO_SMALL = GridNotFound(
-    "The picture shows too few squares to place a grid; use a picture of at least 30 by 30 mm "
-    "of the paper.",
-    "too_small",
-)
 NOT_FLAT = GridNotFound(
     "The grid lines bend or spread across the picture, so one scale cannot hold for all of "
     "it; lay the page flat and scan it.",
@@ -72,11 +71,23 @@ def find_grid(picture: Picture) -> SheetMap | GridNotFound:
     coarse = ink.binned(times)
     choice = choose_waves(coarse.darkness, coarse.bin_px)
     if isinstance(choice, GridNotFound):
-        return choice
-    fits = _fit_both(ink, choice, times)
+        return NOT_FLAT if _grid_in_the_middle(coarse) else choice
+    rounding_px = _TWO_LEVEL_PX if is_two_level(picture.pixels) else _SAMPLING_PX
+    fits = _fit_both(ink, choice, times, rounding_px / ink.bin_px)
     if isinstance(fits, GridNotFound):
         return fits
     return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+
+
+def _grid_in_the_middle(coarse: GridInk) -> bool:
+    """Whether a part of the page, flat enough by itself, has thin and bold lines."""
+    rows, columns = coarse.darkness.shape
+    top, left = int(_ASIDE * rows), int(_ASIDE * columns)
+    if min(rows - 2 * top, columns - 2 * left) < SMALLEST_SIDE_PX:
+        return False
+    part = np.ascontiguousarray(coarse.darkness[top : rows - top, left : columns - left])
+    choice = choose_waves(part, coarse.bin_px)
+    return isinstance(choice, Choice) and choice.certain
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -87,7 +98,7 @@ class _Fits:
     scatter_mm: float
 
 
-def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
+def _fit_both(ink: GridInk, choice: Choice, times: int, sampling_px: float) -> _Fits | GridNotFound:
     waves = [np.array(wave) / times for wave in (choice.upright, choice.level)]
     px_per_mm = 1.0 / max(np.hypot(*wave) for wave in waves)
     smallest_mm = min(ink.darkness.shape) / px_per_mm
@@ -97,7 +108,9 @@ def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
     tiles = Tiles.over(ink.darkness.shape, round(tile_mm * px_per_mm))
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * px_per_mm
     fifths = np.array([number for number in choice.fifths if number <= highest])
-    fits = [fit_lines(ink.darkness, wave, fifths, choice.first, tiles) for wave in waves]
+    fits = [
+        fit_lines(ink.darkness, wave, fifths, choice.first, tiles, sampling_px) for wave in waves
+    ]
     bar_mm = _BAR_MM if px_per_mm * ink.bin_px >= _COARSE_PX_PER_MM else _COARSE_BAR_MM
     bends = [bend_of(fit.offsets_mm, tile_mm / 2.0) for fit in fits]
     _log.debug("stray %.3f %.3f, bends %s", fits[0].stray, fits[1].stray, bends)

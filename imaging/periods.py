@@ -9,6 +9,7 @@ whole numbers are strong (all lines), the four between are equally strong among 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -35,6 +36,7 @@ _OVERTONE_POWER = 0.003
 _BESIDE = 0.09
 _STRONGER = 3.0
 _FIFTEENTHS = np.array([1.0, 2.0, 4.0, 5.0, 7.0, 8.0]) / 15.0
+_PRIME_PARTS = tuple(np.arange(1.0, parts) / parts for parts in (7, 11, 13))
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,7 +143,7 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
     """Hold one family's profile against 'one small square is one cycle of `wave`'."""
     most = int(min(_MOST_HARMONICS, HIGHEST_CYCLES_PER_PX / wave) * _TENTHS)
     tenths = np.arange(1.0, most + 1.0) / _TENTHS
-    found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS]))
+    found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS, *_PRIME_PARTS]))
     one = int(_TENTHS) - 1
     if most <= one:
         return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0, 0.0)
@@ -204,15 +206,19 @@ def _faintest_thin(values: ComplexArray, number: NDArray[np.int_]) -> float:
 
 
 def _longer(found: Amplitudes, number: NDArray[np.int_], most: int) -> float:
-    """Power at odd tenths or at fifteenths over that of the bold lines, medians of each.
+    """Power that only a longer period explains, over that of the page's own waves.
 
-    A ruling with a bold line at every tenth square has the former; one square taken two or
-    three times too small makes all the page's own waves one or the other. Rows of traces
-    raise single waves of those, a ruling all.
+    A ruling with a bold line at every tenth square has waves at odd tenths; one square taken
+    two or three times too small makes the page's bold lines waves at odd tenths or at
+    fifteenths, and seven times or more its thin lines waves at sevenths and so on. Medians,
+    for rows of traces raise single waves of those, a ruling all.
     """
     surplus = np.maximum(np.abs(found.values) ** 2 - 4.0 * found.errors**2, 0.0)
     first = number <= 10
     bold = float(np.median(surplus[:most][first & (number % 2 == 0) & (number % 10 != 0)]))
+    thin = float(surplus[9])
     odd = float(np.median(surplus[:most][first & (number % 2 == 1)]))
-    fifteenths = float(np.median(surplus[most:]))
-    return max(odd, fifteenths) / max(bold, 1e-30)
+    ends = np.cumsum([most] + [len(parts) for parts in (_FIFTEENTHS, *_PRIME_PARTS)])
+    parts = [float(np.median(surplus[start:end])) for start, end in pairwise(ends)]
+    by_bold = max(odd, parts[0]) / max(bold, 1e-30)
+    return max(by_bold, max(parts[1:]) / max(thin, 1e-30))

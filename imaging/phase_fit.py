@@ -61,6 +61,7 @@ def fit_lines(
     fifths: NDArray[np.int_],
     first: int,
     tiles: Tiles,
+    sampling_px: float,
 ) -> LineFit:
     """Correct a first wave by the phases in tiles.
 
@@ -74,6 +75,9 @@ def fit_lines(
     first : int
         The strongest of them, with which to begin.
     tiles : Tiles
+    sampling_px : float
+        One sigma of what the pixels' own rounding may move lines by over the whole plane;
+        lines in step with the pixels are all moved alike, which no tile can show.
     """
     found = lock_in(plane, np.outer(fifths / 5.0, wave), tiles)
     places = tiles.centres_px().reshape(-1, 2)
@@ -93,7 +97,10 @@ def fit_lines(
     corrected = wave + correction[1:]
     start_mm = float(correction[0] - correction[1:] @ middle)
     start_mm, amplitudes = _on_bold_line(state.amplitudes, fifths, start_mm)
-    covariance = _to_corner(_jackknife(design, residual, weights, shape), middle)
+    spread = _jackknife(design, residual, weights, shape)
+    rounding_mm = sampling_px * float(np.hypot(*corrected))
+    sides = np.array([1.0, plane.shape[1], plane.shape[0]])
+    covariance = _to_corner(spread + np.diag((rounding_mm / sides) ** 2), middle)
     lines = state.strength > 0.0
     on_map = np.abs(residual) < _ON_MAP_MM
     stray = float(1.0 - on_map[lines].mean()) if lines.any() else 1.0
