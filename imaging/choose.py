@@ -24,7 +24,7 @@ _LEAST_SHARE = 0.015
 _FEWEST_LINES = 6.0
 _DOTS_SHARE = 0.45
 _THIN_IN_OTHER = 1.05
-_LEAST_SHARE_OF_OTHER = 0.004
+_ALIKE = 2.5
 _FEWEST_SQUARES_OF_1_MM = 55.0
 _MOST_PAIRS = 60
 _STRONGEST_WAVES = 12
@@ -134,14 +134,19 @@ def _with_bold(
 
 
 def _is_ecg(both: list[Fifths]) -> bool:
-    """Both families show thin and bold lines, or one does and the other agrees."""
+    """Both families show thin and bold lines, or one clearly and the other as far as seen.
+
+    Rows of traces five lines apart make bold lines of one family; never of the other.
+    """
     if all(family.is_ecg for family in both):
         return True
     if not any(family.is_ecg for family in both):
         return False
     other = both[1] if both[0].is_ecg else both[0]
-    thin = other.thin_over_bold > _THIN_IN_OTHER
-    return other.seen and thin and other.share > _LEAST_SHARE_OF_OTHER
+    ratios = [family.thin_over_bold for family in both]
+    alike = max(ratios) < _ALIKE * min(ratios)
+    bold = other.seen and other.has_bold and not other.is_longer
+    return bold and alike and other.thin_over_bold > _THIN_IN_OTHER
 
 
 def _is_dots(plane: FloatPlane, pair: Pair) -> bool:

@@ -33,9 +33,11 @@ _SAMPLING_PX = 0.01
 _TWO_LEVEL_PX = 0.08
 _MOST_STRAY = 0.15
 _ASIDE = 0.33
-# The bars of a span of 5 to 50 mm: half a millisecond, or one on a coarse scan, at 25 mm/s.
+# The bar of a span of 5 to 50 mm is half a millisecond at 25 mm/s. On a coarse scan it is one
+# (0.025 mm), and slow beats of the lines' third overtone with the pixels, which look like a
+# bend, come on top: four pixels to a square give up to 0.025 mm of them.
 _BAR_MM = 0.0125
-_COARSE_BAR_MM = 0.025
+_COARSE_BAR_MM = 0.035
 _COARSE_PX_PER_MM = 5.0
 
 NOT_FLAT = GridNotFound(

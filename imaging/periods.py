@@ -96,7 +96,12 @@ class Fifths:
         """Thin lines, every fifth bold, and nothing of a longer period."""
         thin = self.faintest_thin > _FAINTEST_THIN and self.thin_over_bold < _THIN_ALONE
         printed = self.seen and self.share > _LEAST_SHARE
-        return printed and thin and self.has_bold and self.longer < _LONGER_PERIOD
+        return printed and thin and self.has_bold and not self.is_longer
+
+    @property
+    def is_longer(self) -> bool:
+        """Whether the page repeats over more than five of these squares."""
+        return self.longer >= _LONGER_PERIOD
 
 
 def pairs_of(upright: Waves, level: Waves, plane_shape: tuple[int, int]) -> list[Pair]:
