@@ -62,7 +62,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     _let_odd_letters_through()
     try:
         options = _parser_for(words).parse_args(words)
-        _set_up_log(verbose=getattr(options, "verbose", False))
+        _set_up_log(verbose=options.verbose)
         code: int = options.run(options)
     except SmallsquareError as error:
         return _refuse(str(error))
@@ -99,22 +99,25 @@ def _parser_for(words: Sequence[str]) -> argparse.ArgumentParser:
         for name, (add, run) in _COMMANDS.items():
             command = commands.add_parser(name, description=add.__doc__, prog=f"smallsquare {name}")
             add(command)
-            command.add_argument(
-                "--verbose", action="store_true", help="print the log to standard error"
-            )
+            _add_verbose(command)
             command.set_defaults(run=run)
         return parser
     parser = _Parser(
         prog="smallsquare",
-        usage="smallsquare [PICTURE|READING]",
+        usage="smallsquare [--verbose] [PICTURE|READING]",
         description="Measure a paper ECG: opens a window with a picture or a reading.",
         epilog=_COMMANDS_HELP,
         formatter_class=argparse.RawDescriptionHelpFormatter,
     )
     parser.add_argument("path", nargs="?", metavar="PICTURE|READING", help="what to open")
+    _add_verbose(parser)
     parser.add_argument("--version", action="version", version=software_version())
     parser.set_defaults(run=_open_window)
     return parser
+
+
+def _add_verbose(command: argparse.ArgumentParser) -> None:
+    command.add_argument("--verbose", action="store_true", help="print the log to standard error")
 
 
 def _add_grid(command: argparse.ArgumentParser) -> None:

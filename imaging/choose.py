@@ -13,7 +13,7 @@ from imaging.lock_in import Tiles, lock_in
 from imaging.periods import COARSEST_PX_PER_MM, Fifths, Pair, fifths_of, pairs_of
 from imaging.profiles import Profiles, profiles_of
 from imaging.ruling import Ruling, ruling_of
-from imaging.spectrum import waves_of
+from imaging.spectrum import Waves, waves_of
 
 FloatPlane = NDArray[np.float32]
 
@@ -21,11 +21,13 @@ _log = logging.getLogger(__name__)
 
 _WEAKEST_SHARE = 0.02
 _LEAST_SHARE = 0.015
+_FEWEST_LINES = 6.0
 _DOTS_SHARE = 0.45
-_THIN_IN_OTHER = 1.15
-_LEAST_SHARE_OF_OTHER = 0.004
+_THIN_IN_OTHER = 1.05
+_ALIKE = 2.5
 _FEWEST_SQUARES_OF_1_MM = 55.0
 _MOST_PAIRS = 60
+_STRONGEST_WAVES = 12
 
 NO_LINES = GridNotFound(
     "No grid of evenly spaced lines was found; check that the picture shows ECG paper, and "
@@ -46,6 +48,12 @@ TOO_COARSE = GridNotFound(
     "The small squares are fewer than three pixels wide; scan the page again at 150 dots per "
     "inch or more.",
     "too_coarse",
+)
+
+TOO_SMALL = GridNotFound(
+    "The picture shows too few squares to place a grid; use a picture of at least 30 by 30 mm "
+    "of the paper.",
+    "too_small",
 )
 
 
@@ -87,14 +95,26 @@ def choose_waves(plane: FloatPlane, bin_px: int) -> Choice | GridNotFound:
     upright, level, skew_rad = waves_of(plane)
     if not len(upright.waves) and not len(level.waves):
         return NO_LINES
-    if not len(upright.waves) or not len(level.waves):
-        return ONE_DIRECTION
     pairs = pairs_of(upright, level, plane.shape)
     strongest = sorted(pairs, key=lambda pair: -pair.power)[:_MOST_PAIRS]
     pairs = [pair for pair in pairs if pair in strongest]
     profiles = profiles_of(plane, skew_rad)
     choice = _with_bold(plane, bin_px, pairs, profiles)
-    return choice if choice is not None else _with_one_spacing(plane, bin_px, pairs, profiles)
+    if choice is None:
+        choice = _with_one_spacing(plane, bin_px, pairs, profiles)
+    return choice if choice is not None else _why_not((upright, level), profiles)
+
+
+def _why_not(families: tuple[Waves, Waves], profiles: tuple[Profiles, Profiles]) -> GridNotFound:
+    """Whether lines were there at all, and which way."""
+    ruled = []
+    for family, part in zip(families, profiles, strict=True):
+        strongest = family.lengths[np.argsort(-family.power)[:_STRONGEST_WAVES]]
+        rules = [ruling_of(part, float(wave)) for wave in strongest]
+        ruled.append(any(r.seen and r.is_lines and r.share > _LEAST_SHARE for r in rules))
+    if all(ruled):
+        return NOT_A_MILLIMETRE_GRID
+    return ONE_DIRECTION if any(ruled) else NO_LINES
 
 
 def _with_bold(
@@ -114,14 +134,19 @@ def _with_bold(
 
 
 def _is_ecg(both: list[Fifths]) -> bool:
-    """Both families show thin and bold lines, or one does and the other agrees."""
+    """Both families show thin and bold lines, or one clearly and the other as far as seen.
+
+    Rows of traces five lines apart make bold lines of one family; never of the other.
+    """
     if all(family.is_ecg for family in both):
         return True
     if not any(family.is_ecg for family in both):
         return False
     other = both[1] if both[0].is_ecg else both[0]
-    thin = other.thin_over_bold > _THIN_IN_OTHER
-    return other.seen and thin and other.share > _LEAST_SHARE_OF_OTHER
+    ratios = [family.thin_over_bold for family in both]
+    alike = max(ratios) < _ALIKE * min(ratios)
+    bold = other.seen and other.has_bold and not other.is_longer
+    return bold and alike and other.thin_over_bold > _THIN_IN_OTHER
 
 
 def _is_dots(plane: FloatPlane, pair: Pair) -> bool:
@@ -142,19 +167,19 @@ def _is_dots(plane: FloatPlane, pair: Pair) -> bool:
 
 def _with_one_spacing(
     plane: FloatPlane, bin_px: int, pairs: list[Pair], profiles: tuple[Profiles, Profiles]
-) -> Choice | GridNotFound:
+) -> Choice | GridNotFound | None:
     """The longest pair that shows plain lines of one spacing both ways."""
-    if not pairs:
-        return NOT_A_MILLIMETRE_GRID
-    weakest = _WEAKEST_SHARE * max(pair.power for pair in pairs)
+    weakest = _WEAKEST_SHARE * max((pair.power for pair in pairs), default=0.0)
     for pair in pairs:
         both = [ruling_of(part, wave) for part, wave in zip(profiles, pair.lengths, strict=True)]
         plain = all(rule.seen and rule.is_lines and rule.share > _LEAST_SHARE for rule in both)
         if pair.power < weakest or not plain:
             continue
+        if min(plane.shape) * min(pair.lengths) < _FEWEST_LINES:
+            return TOO_SMALL
         _log.debug("one spacing: %s %s", pair, both)
         return _assumed(plane, bin_px, pair, both)
-    return NOT_A_MILLIMETRE_GRID
+    return None
 
 
 def _assumed(

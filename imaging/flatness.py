@@ -67,7 +67,7 @@ def bend_of(offsets_mm: FloatArray, step_mm: float) -> Bend:
     # in a mean (their correlation is 1/6 each way); traces reach over more than one.
     expected = _SHARED_NOISE * float(np.mean(noise))
     excess = max(float(np.mean((change @ surface) ** 2)) - expected, 0.0)
-    scatter_mm = np.sqrt(excess / 2.0) if excess > 2.0 * expected else 0.0
+    scatter_mm = np.sqrt(excess / 2.0) if excess > 4.0 * expected else 0.0
     noise_mm = 1.96 * np.sqrt(_HIGH_NOISE * expected)
     return Bend(1.96 * float(np.sqrt(excess)), float(noise_mm), float(scatter_mm))
 

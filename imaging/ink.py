@@ -25,6 +25,8 @@ _BOLD_PERCENTILE = 93.0
 _FAINTEST_GREY_LEVELS = 1.5
 _CUT_ABOVE_BOLD = 1.25
 _PEN_STRIDE = 5
+_LEVELS_STRIDE = 7
+_LEVELS_SHARE = 0.002
 _PEN_PERCENTILE = 99.7
 _GRID_PERCENTILE = 95.0
 _PEN_OVER_GRID = 2.0
@@ -108,6 +110,15 @@ def grid_weights(pixels: NDArray[np.uint8]) -> FloatPlane:
     if weights.sum() < 1.0:
         return np.full(3, 1.0 / 3.0, dtype=np.float32)
     return np.asarray(weights / weights.sum(), dtype=np.float32)
+
+
+def is_two_level(pixels: NDArray[np.uint8]) -> bool:
+    """Whether a picture is black and white with hardly a grey between."""
+    sample = pixels[::_LEVELS_STRIDE, ::_LEVELS_STRIDE, 1]
+    low, high = int(sample.min()), int(sample.max())
+    margin = (high - low) // 8
+    between = (sample > low + margin) & (sample < high - margin)
+    return float(between.mean()) < _LEVELS_SHARE
 
 
 def _bin_floats(plane: FloatPlane, times: int) -> FloatPlane:

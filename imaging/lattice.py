@@ -1,4 +1,4 @@
-"""Find the millimetre lattice on a flat picture."""
+"""Find the millimetre lattice: flat where the page is flat, else followed over the sheet."""
 
 from __future__ import annotations
 
@@ -8,11 +8,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from imaging.choose import Choice, choose_waves
+from imaging.choose import TOO_SMALL, Choice, choose_waves
 from imaging.errors import GridNotFound
 from imaging.flatness import bend_of
 from imaging.follow import follow_sheet
-from imaging.ink import GridInk, grid_ink
+from imaging.ink import GridInk, grid_ink, is_two_level
 from imaging.lock_in import Tiles
 from imaging.periods import HIGHEST_CYCLES_PER_PX
 from imaging.phase_fit import LineFit, fit_lines
@@ -29,17 +29,18 @@ _SPECTRUM_PIXELS = 4_200_000
 _TILE_MM = 15.0
 _SMALL_TILE_MM = 10.0
 _COVERAGE_WAVES = 4
+# Measured on drawn pages (tests/measure_grid.py): what remains where tiles agree too well.
+_SAMPLING_PX = 0.01
+_TWO_LEVEL_PX = 0.08
 _MOST_STRAY = 0.15
-# The bars of a span of 5 to 50 mm: half a millisecond, or one on a coarse scan, at 25 mm/s.
+_ASIDE = 0.33
+# The bar of a span of 5 to 50 mm is half a millisecond at 25 mm/s. On a coarse scan it is one
+# (0.025 mm), and slow beats of the lines' third overtone with the pixels, which look like a
+# bend, come on top: four pixels to a square give up to 0.025 mm of them.
 _BAR_MM = 0.0125
-_COARSE_BAR_MM = 0.025
+_COARSE_BAR_MM = 0.035
 _COARSE_PX_PER_MM = 5.0
 
-TOO_SMALL = GridNotFound(
-    "The picture shows too few squares to place a grid; use a picture of at least 30 by 30 mm "
-    "of the paper.",
-    "too_small",
-)
 NOT_FLAT = GridNotFound(
     "The grid lines bend or spread across the picture, so one scale cannot hold for all of "
     "it; lay the page flat and scan it.",
@@ -48,7 +49,9 @@ NOT_FLAT = GridNotFound(
 
 
 def find_grid(picture: Picture) -> SheetMap | GridNotFound:
-    """Find the millimetre grid of a flat scan.
+    """Find the millimetre grid of a scan or a photograph.
+
+    A flat page gets one origin and two steps; one that no such map fits is followed.
 
     Parameters
     ----------
@@ -71,14 +74,36 @@ def find_grid(picture: Picture) -> SheetMap | GridNotFound:
     ink = grid_ink(picture.pixels)
     times = int(np.ceil(np.sqrt(ink.darkness.size / _SPECTRUM_PIXELS)))
     coarse = ink.binned(times)
-    choice = choose_waves(coarse.darkness, coarse.bin_px)
-    fits = choice if isinstance(choice, GridNotFound) else _fit_both(ink, choice, times)
-    if not isinstance(choice, GridNotFound) and not isinstance(fits, GridNotFound):
-        return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+    flat = _flat_map(picture, ink, coarse)
+    if isinstance(flat, SheetMap):
+        return flat
     followed = follow_sheet(picture.size_px, coarse)
-    if isinstance(followed, SheetMap) or isinstance(choice, GridNotFound):
-        return followed if isinstance(followed, SheetMap) else choice
-    return NOT_FLAT
+    if isinstance(followed, SheetMap):
+        return followed
+    return NOT_FLAT if flat is not NOT_FLAT and _grid_in_the_middle(coarse) else flat
+
+
+def _flat_map(picture: Picture, ink: GridInk, coarse: GridInk) -> SheetMap | GridNotFound:
+    choice = choose_waves(coarse.darkness, coarse.bin_px)
+    if isinstance(choice, GridNotFound):
+        return choice
+    rounding_px = _TWO_LEVEL_PX if is_two_level(picture.pixels) else _SAMPLING_PX
+    times = coarse.bin_px // ink.bin_px
+    fits = _fit_both(ink, choice, times, rounding_px / ink.bin_px)
+    if isinstance(fits, GridNotFound):
+        return fits
+    return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
+
+
+def _grid_in_the_middle(coarse: GridInk) -> bool:
+    """Whether a part of the page, flat enough by itself, has thin and bold lines."""
+    rows, columns = coarse.darkness.shape
+    top, left = int(_ASIDE * rows), int(_ASIDE * columns)
+    if min(rows - 2 * top, columns - 2 * left) < SMALLEST_SIDE_PX:
+        return False
+    part = np.ascontiguousarray(coarse.darkness[top : rows - top, left : columns - left])
+    choice = choose_waves(part, coarse.bin_px)
+    return isinstance(choice, Choice) and choice.certain
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -89,7 +114,7 @@ class _Fits:
     scatter_mm: float
 
 
-def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
+def _fit_both(ink: GridInk, choice: Choice, times: int, sampling_px: float) -> _Fits | GridNotFound:
     waves = [np.array(wave) / times for wave in (choice.upright, choice.level)]
     px_per_mm = 1.0 / max(np.hypot(*wave) for wave in waves)
     smallest_mm = min(ink.darkness.shape) / px_per_mm
@@ -99,7 +124,9 @@ def _fit_both(ink: GridInk, choice: Choice, times: int) -> _Fits | GridNotFound:
     tiles = Tiles.over(ink.darkness.shape, round(tile_mm * px_per_mm))
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * px_per_mm
     fifths = np.array([number for number in choice.fifths if number <= highest])
-    fits = [fit_lines(ink.darkness, wave, fifths, choice.first, tiles) for wave in waves]
+    fits = [
+        fit_lines(ink.darkness, wave, fifths, choice.first, tiles, sampling_px) for wave in waves
+    ]
     bar_mm = _BAR_MM if px_per_mm * ink.bin_px >= _COARSE_PX_PER_MM else _COARSE_BAR_MM
     bends = [bend_of(fit.offsets_mm, tile_mm / 2.0) for fit in fits]
     _log.debug("stray %.3f %.3f, bends %s", fits[0].stray, fits[1].stray, bends)

@@ -9,11 +9,12 @@ whole numbers are strong (all lines), the four between are equally strong among 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from imaging.profiles import Amplitudes, Profiles
+from imaging.profiles import Amplitudes, ComplexArray, Profiles
 from imaging.spectrum import Waves
 
 FloatArray = NDArray[np.float64]
@@ -22,12 +23,11 @@ HIGHEST_CYCLES_PER_PX = 0.47
 SQUARE_TOLERANCE = 0.045
 COARSEST_PX_PER_MM = 3.0
 _MOST_HARMONICS = 3.0
-_THIN_OVER_BOLD = (1.35, 25.0)
+_FAINTEST_THIN = 0.015
+_THIN_ALONE = 45.0
 _LEAST_SHARE = 0.004
 _IN_STEP = 0.85
 _IN_STEP_UP_TO = 12
-_RAISED = 1.15
-_HALF_LINES = 1.2
 _CLEAR = 5.0
 _LONGER_PERIOD = 0.2
 _TENTHS = 10.0
@@ -36,6 +36,7 @@ _OVERTONE_POWER = 0.003
 _BESIDE = 0.09
 _STRONGER = 3.0
 _FIFTEENTHS = np.array([1.0, 2.0, 4.0, 5.0, 7.0, 8.0]) / 15.0
+_PRIME_PARTS = tuple(np.arange(1.0, parts) / parts for parts in (7, 11, 13))
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,6 +73,8 @@ class Fifths:
         Share of waves that only a longer period than five squares explains.
     share : float
         How much of the picture's variance the lines are.
+    faintest_thin : float
+        Height of the faintest of the four thin lines over that of the bold one.
     """
 
     seen: bool
@@ -81,6 +84,7 @@ class Fifths:
     bold_line: int
     longer: float
     share: float
+    faintest_thin: float
 
     @property
     def has_bold(self) -> bool:
@@ -90,9 +94,14 @@ class Fifths:
     @property
     def is_ecg(self) -> bool:
         """Thin lines, every fifth bold, and nothing of a longer period."""
-        thin = _THIN_OVER_BOLD[0] < self.thin_over_bold < _THIN_OVER_BOLD[1]
+        thin = self.faintest_thin > _FAINTEST_THIN and self.thin_over_bold < _THIN_ALONE
         printed = self.seen and self.share > _LEAST_SHARE
-        return printed and thin and self.has_bold and self.longer < _LONGER_PERIOD
+        return printed and thin and self.has_bold and not self.is_longer
+
+    @property
+    def is_longer(self) -> bool:
+        """Whether the page repeats over more than five of these squares."""
+        return self.longer >= _LONGER_PERIOD
 
 
 def pairs_of(upright: Waves, level: Waves, plane_shape: tuple[int, int]) -> list[Pair]:
@@ -139,10 +148,10 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
     """Hold one family's profile against 'one small square is one cycle of `wave`'."""
     most = int(min(_MOST_HARMONICS, HIGHEST_CYCLES_PER_PX / wave) * _TENTHS)
     tenths = np.arange(1.0, most + 1.0) / _TENTHS
-    found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS]))
+    found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS, *_PRIME_PARTS]))
     one = int(_TENTHS) - 1
     if most <= one:
-        return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0)
+        return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0, 0.0)
     square, error = abs(found.values[one]), float(found.errors[one])
     seen = bool(square > _CLEAR * error and found.coherence[one] > 0.5)
     # Counted from the line nearest the start, so that thin lines stand at whole numbers.
@@ -166,37 +175,55 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
         line,
         _longer(found, number, most),
         2.0 * float((np.abs(found.values[1:most:2]) ** 2).sum()) / profiles.variance,
+        _faintest_thin(values * np.exp(2j * np.pi * tenths * line), number),
     )
 
 
 def _thin_over_bold(strength: FloatArray, errors: FloatArray, number: NDArray[np.int_]) -> float:
-    """Strength at one square over its neighbours a fifth away, cautiously.
+    """Strength at one square over its neighbours a fifth away, cautiously."""
+    near = [tenth - 1 for tenth in (8, 12) if tenth in number]
+    bold = float(np.mean(strength[near]) + 2.0 * np.max(errors[near]))
+    return float(strength[9] - 2.0 * errors[9]) / max(bold, 1e-30)
 
-    Where that is raised a little, the same at half a square decides: there a broad bold
-    line's own wave fades. Alone it would take lines at half squares for thin ones.
+
+def _faintest_thin(values: ComplexArray, number: NDArray[np.int_]) -> float:
+    """Height of the faintest of the four thin lines over the bold one's, from the fold.
+
+    The waves at fifths, put together again, are the mean of all large squares; each thin
+    line is held against the paper half a square further from the bold one. A drawn baseline
+    may fill one place, not four.
     """
-    ratios = []
-    for centre in (10, 20):
-        near = [tenth - 1 for tenth in (centre - 2, centre + 2) if tenth in number]
-        if centre in number and near:
-            bold = float(np.mean(strength[near]) + 2.0 * np.max(errors[near]))
-            square = float(strength[centre - 1] - 2.0 * errors[centre - 1])
-            ratios.append(square / max(bold, 1e-30))
-    if len(ratios) < 2 or ratios[0] < _RAISED or strength[19] > _HALF_LINES * strength[9]:
-        return ratios[0] if ratios else 0.0
-    return max(ratios)
+    fifths = number[1::2] // 2
+    # Tapered, so that a sharp bold line does not ring over its neighbours.
+    taper = 0.5 + 0.5 * np.cos(np.pi * fifths / (len(fifths) + 1.0))
+
+    def height(place: float) -> float:
+        turned = values[1::2] * np.exp(2j * np.pi * fifths * place / 5.0)
+        return float((taper * turned.real).sum())
+
+    thin = [
+        height(1.0) - height(1.5),
+        height(2.0) - 0.5 * (height(1.5) + height(2.5)),
+        height(3.0) - 0.5 * (height(2.5) + height(3.5)),
+        height(4.0) - height(3.5),
+    ]
+    return min(thin) / max(height(0.0) - height(2.5), 1e-30)
 
 
 def _longer(found: Amplitudes, number: NDArray[np.int_], most: int) -> float:
-    """Power at odd tenths or at fifteenths over that of the bold lines, medians of each.
+    """Power that only a longer period explains, over that of the page's own waves.
 
-    A ruling with a bold line at every tenth square has the former; one square taken two or
-    three times too small makes all the page's own waves one or the other. Rows of traces
-    raise single waves of those, a ruling all.
+    A ruling with a bold line at every tenth square has waves at odd tenths; one square taken
+    two or three times too small makes the page's bold lines waves at odd tenths or at
+    fifteenths, and seven times or more its thin lines waves at sevenths and so on. Medians,
+    for rows of traces raise single waves of those, a ruling all.
     """
     surplus = np.maximum(np.abs(found.values) ** 2 - 4.0 * found.errors**2, 0.0)
     first = number <= 10
     bold = float(np.median(surplus[:most][first & (number % 2 == 0) & (number % 10 != 0)]))
+    thin = float(surplus[9])
     odd = float(np.median(surplus[:most][first & (number % 2 == 1)]))
-    fifteenths = float(np.median(surplus[most:]))
-    return max(odd, fifteenths) / max(bold, 1e-30)
+    ends = np.cumsum([most] + [len(parts) for parts in (_FIFTEENTHS, *_PRIME_PARTS)])
+    parts = [float(np.median(surplus[start:end])) for start, end in pairwise(ends)]
+    by_bold = max(odd, parts[0]) / max(bold, 1e-30)
+    return max(by_bold, max(parts[1:]) / max(thin, 1e-30))

@@ -61,6 +61,7 @@ def fit_lines(
     fifths: NDArray[np.int_],
     first: int,
     tiles: Tiles,
+    sampling_px: float,
 ) -> LineFit:
     """Correct a first wave by the phases in tiles.
 
@@ -74,6 +75,9 @@ def fit_lines(
     first : int
         The strongest of them, with which to begin.
     tiles : Tiles
+    sampling_px : float
+        One sigma of what the pixels' own rounding may move lines by over the whole plane;
+        lines in step with the pixels are all moved alike, which no tile can show.
     """
     found = lock_in(plane, np.outer(fifths / 5.0, wave), tiles)
     places = tiles.centres_px().reshape(-1, 2)
@@ -92,8 +96,11 @@ def fit_lines(
     shape = tiles.shape
     corrected = wave + correction[1:]
     start_mm = float(correction[0] - correction[1:] @ middle)
-    start_mm, amplitudes = _on_bold_line(state.amplitudes, fifths, start_mm)
-    covariance = _to_corner(_jackknife(design, residual, weights, shape), middle)
+    start_mm, amplitudes = on_bold_line(state.amplitudes, fifths, start_mm)
+    spread = _jackknife(design, residual, weights, shape)
+    rounding_mm = sampling_px * float(np.hypot(*corrected))
+    sides = np.array([1.0, plane.shape[1], plane.shape[0]])
+    covariance = _to_corner(spread + np.diag((rounding_mm / sides) ** 2), middle)
     lines = state.strength > 0.0
     on_map = np.abs(residual) < _ON_MAP_MM
     stray = float(1.0 - on_map[lines].mean()) if lines.any() else 1.0
@@ -148,7 +155,7 @@ def _robust_plane(
     return solution, weights
 
 
-def _on_bold_line(
+def on_bold_line(
     amplitudes: ComplexArray, fifths: NDArray[np.int_], start_mm: float
 ) -> tuple[float, ComplexArray]:
     """Shift the origin onto a bold line: where all waves are dark together."""

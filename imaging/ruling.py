@@ -15,7 +15,7 @@ FloatArray = NDArray[np.float64]
 
 _CLEAR = 5.0
 _IN_STEP = 0.8
-_NARROW = 0.1
+_NARROW = 0.03
 _LONGER_PERIOD = 0.3
 _MORE_LINES = 1.5
 _MOST_HARMONICS = 13

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 
 from imaging.flat_view import FlatView
 from imaging.lock_in import ComplexArray
-from imaging.phase_fit import _on_bold_line
+from imaging.phase_fit import on_bold_line
 from imaging.sheet_offsets import Lattice, offsets_of
 from imaging.sheet_scale import SheetScale
 from imaging.smooth_surface import smoothest
@@ -121,8 +121,8 @@ def _family(
         return None
     base_mm = np.where(region, found.offsets, 0.0)
     values = found.values * np.exp(-2j * np.pi * base_mm[..., np.newaxis] * fifths / 5.0)
-    shift_mm, amplitudes = _on_bold_line(values[region].mean(axis=0), fifths, 0.0)
-    # _on_bold_line gives where zero lies from the bold line.
+    shift_mm, amplitudes = on_bold_line(values[region].mean(axis=0), fifths, 0.0)
+    # on_bold_line gives where zero lies from the bold line.
     values = values * np.exp(2j * np.pi * -shift_mm * fifths / 5.0)
     turned = values * np.exp(-1j * np.angle(amplitudes))
     noise = np.median(np.abs(turned[region].imag), axis=0) / 0.6745

@@ -164,7 +164,8 @@ def _vote(upright: Waves, level: Waves, tolerance: float) -> float:
     both = np.concatenate([upright.waves, level.waves @ _QUARTER_BACK])
     if not len(both):
         return 0.0
-    weight = np.log(np.concatenate([upright.snr, level.snr]))
+    # Cubed, so that the few waves of a page without bold lines outweigh many of words.
+    weight = np.log(np.concatenate([upright.snr, level.snr])) ** 3
     voters = both[np.argsort(-weight)[:_VOTERS]]
     angles = np.arctan2(voters[:, 1], voters[:, 0])
     scores = [

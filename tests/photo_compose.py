@@ -158,8 +158,11 @@ def _cast_shadow(canvas: Canvas, view: View, lamp: FloatArray) -> None:
     """A soft dark rim on what lies under the sheet, away from the lamp, in place."""
     height_px, width_px = canvas.owner.shape
     _, finest = view.px_per_mm(5)
-    reach_px = 2.5 * finest
+    # Capped: of a sheet whose corner stands right before the lens only a blur is seen.
+    reach_px = min(2.5 * finest, 0.05 * width_px)
     outline = view.outline_px() - lamp[:2] * reach_px
+    if not np.isfinite(outline).all():
+        return  # a sheet that reaches behind the camera
     low = np.maximum(outline.min(axis=0) - 4 * reach_px, 0).astype(int)
     high = np.minimum(outline.max(axis=0) + 4 * reach_px, (width_px, height_px)).astype(int)
     if (high <= low).any():

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 from app.calculator.cautions import caution
 from app.calculator.display import shown_number
 from app.calculator.lines import Line
-from app.calculator.uncertainty import Axis, Estimate
+from app.calculator.uncertainty import PEN_WIDTH_MM, Axis, Estimate, pitch_px_per_mm
 from app.calculator.values import Caution
 from app.reading.calibration import Evidence
 from app.reading.model import Reading
@@ -15,6 +15,8 @@ from imaging.sheet_map import SheetMap
 
 # 150 dots an inch (computed).
 COARSE_PX_PER_MM = 5.9
+# As much as the pen's own share of a leg's error.
+COARSE_STEP_MM = 0.5 * PEN_WIDTH_MM
 # A printed ruling is within ±2 %: EC11, IEC 60601-2-51, from memory.
 UNEQUAL_PERCENT = 2.0
 # Nearer to a limit than this, a number lies on it: no side can be told in two decimals.
@@ -28,9 +30,12 @@ _EVIDENCE = {
 
 
 def sheet_cautions(
-    reading: Reading, axis: Axis, lead: str | None, *, covered: bool
+    reading: Reading, axis: Axis, lead: str | None, *, covered: bool, step_mm: float
 ) -> list[Caution]:
-    """What belongs beside anything measured along an axis of the sheet in a lead."""
+    """What belongs beside anything measured along an axis of the sheet in a lead.
+
+    `covered` and `step_mm` as in `Span`.
+    """
     found = [*_setting_cautions(reading, axis, lead)]
     sheet_map = reading.sheet_map
     if sheet_map is None:
@@ -44,6 +49,7 @@ def sheet_cautions(
     return [
         *found,
         *_coarse_picture(reading, sheet_map, axis, lead),
+        *_coarse_placing(step_mm),
         *_unequal_pitch(sheet_map),
     ]
 
@@ -51,7 +57,8 @@ def sheet_cautions(
 def line_cautions(reading: Reading, axis: Axis, lines: Sequence[Line]) -> list[Caution]:
     """What belongs beside anything that rests on these lines, the first one's lead leading."""
     covered = all(line.covered for line in lines)
-    found = sheet_cautions(reading, axis, lines[0].lead, covered=covered)
+    step_mm = max(line.step_mm for line in lines)
+    found = sheet_cautions(reading, axis, lines[0].lead, covered=covered, step_mm=step_mm)
     if any(line.lead is None for line in lines):
         found.append(caution("no_lead"))
     return found
@@ -98,15 +105,18 @@ def _setting_cautions(reading: Reading, axis: Axis, lead: str | None) -> list[Ca
 def _coarse_picture(
     reading: Reading, sheet_map: SheetMap, axis: Axis, lead: str | None
 ) -> list[Caution]:
+    pitch = pitch_px_per_mm(sheet_map, axis)
     if axis is Axis.ALONG:
-        pitch = sheet_map.x_pitch_px_per_mm
         pixel, unit = reading.calibration.duration_ms(1.0 / pitch), "ms"
     else:
-        pitch = sheet_map.y_pitch_px_per_mm
         pixel, unit = reading.calibration.height_mv(1.0 / pitch, lead), "mV"
     if pitch >= COARSE_PX_PER_MM:
         return []
     return [caution("coarse_picture", pixel=pixel, unit=unit)]
+
+
+def _coarse_placing(step_mm: float) -> list[Caution]:
+    return [caution("coarse_placing", step=step_mm)] if step_mm > COARSE_STEP_MM else []
 
 
 def _unequal_pitch(sheet_map: SheetMap) -> list[Caution]:

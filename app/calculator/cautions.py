@@ -74,6 +74,12 @@ TABLE: dict[str, CautionEntry] = {
         "6.8 ms at 25 mm/s.",
         "quantisation (computed)",
     ),
+    "coarse_placing": CautionEntry(
+        "A mark was placed at a coarse zoom, in steps of about {step:.2g} mm.",
+        "The ± contains that: zoom in and place it again, or nudge it with the arrow keys, for "
+        "a smaller one.",
+        "quantisation (computed)",
+    ),
     "outside_seen_grid": CautionEntry(
         "A mark lies where the grid was not seen.",
         "The scale there is carried over from elsewhere on the page.",

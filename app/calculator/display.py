@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from app.calculator.values import Value
+from app.calculator.values import Caution, Value
 
 NO_VALUE = "–"
+UNCONFIRMED_MARK = "?"
 _MINUS = "−"
 _MOST_DECIMALS = 3
 _SHOWN_UNITS = {"deg": "°"}
@@ -24,6 +25,21 @@ def format_value(value: Value) -> str:
     number = shown_number(value.value, value.plus_minus)
     plus_minus = shown_number(value.plus_minus, value.plus_minus)
     return with_unit(f"{number} ± {plus_minus}", value.unit)
+
+
+def is_doubt(caution: Caution) -> bool:
+    """Whether a caution says that a setting is not confirmed or the scale not certain."""
+    return caution.code.endswith("_unconfirmed") or caution.code == "scale_uncertain"
+
+
+def is_unconfirmed(value: Value) -> bool:
+    """Whether a value rests on a setting nobody has confirmed, or on an uncertain scale."""
+    return any(is_doubt(caution) for caution in value.cautions)
+
+
+def with_mark(text: str, *values: Value) -> str:
+    """A text about values, with the mark that says that one of them is unconfirmed."""
+    return f"{text} {UNCONFIRMED_MARK}" if any(map(is_unconfirmed, values)) else text
 
 
 def with_unit(number: str, unit: str) -> str:

@@ -32,6 +32,8 @@ class Line:
     caliper_ids : tuple of int
     covered : bool
         Whether the grid was seen at every mark.
+    step_mm : float
+        The coarsest step in which its marks could be placed; see `Span`.
     refusal : str
         One sentence where there is no mean, else empty.
     """
@@ -42,6 +44,7 @@ class Line:
     mean: Estimate | None
     caliper_ids: tuple[int, ...]
     covered: bool
+    step_mm: float = 0.0
     refusal: str = ""
 
     @property
@@ -117,14 +120,15 @@ def _line(line_key: LineKey, spans: Sequence[Span]) -> Line:
     key, lead = line_key
     ids = tuple(span.caliper.caliper_id for span in spans)
     covered = all(span.covered for span in spans)
+    step_mm = max(span.step_mm for span in spans)
     refusal = next((said for span in spans if (said := _refusal(line_key, span))), "")
     if refusal:
-        return Line(key, lead, (), None, ids, covered, refusal)
+        return Line(key, lead, (), None, ids, covered, step_mm, refusal)
     beats = _beats(spans)
     # Chained intervals make up one stretch, whose mean is what it is however they differ.
     known = quantity(key)
     mean = plain_mean(beats) if known is not None and known.chained else mean_of(beats)
-    return Line(key, lead, beats, mean, ids, covered)
+    return Line(key, lead, beats, mean, ids, covered, step_mm)
 
 
 def _beats(spans: Sequence[Span]) -> tuple[Estimate, ...]:
@@ -139,9 +143,7 @@ def _beats(spans: Sequence[Span]) -> tuple[Estimate, ...]:
     beats = []
     for _, same in sorted(by_beat.items(), key=lambda item: item[0]):
         estimates = [span.estimate for span in same if span.estimate is not None]
-        leg = same[0].leg
-        assert leg is not None  # a span that was not refused has its leg error
-        beats.append(repeated(estimates, leg))
+        beats.append(repeated(estimates, same[0].resolution_share))
     return tuple(beats)
 
 

@@ -31,7 +31,7 @@ def measure_caliper(reading: Reading, caliper: Caliper) -> list[Value]:
     if span.estimate is None:
         sentence = span.refusal if span.refusal == NO_SCALE else f"This caliper {span.refusal}"
         return [refused(key, sentence, method, ids, lead=lead) for key in keys]
-    cautions = sheet_cautions(reading, axis, lead, covered=span.covered)
+    cautions = sheet_cautions(reading, axis, lead, covered=span.covered, step_mm=span.step_mm)
     gaps = caliper.teeth - 1
     values = [given(keys[0], span.estimate, method, ids, cautions, n=gaps, lead=lead)]
     for key in keys[1:]:

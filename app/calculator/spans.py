@@ -8,7 +8,13 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from app.calculator.uncertainty import Axis, Estimate, FloatArray, LegError, leg_error
+from app.calculator.uncertainty import (
+    Axis,
+    Estimate,
+    FloatArray,
+    leg_error,
+    pitch_px_per_mm,
+)
 from app.reading.calibration import Calibration
 from app.reading.marks import Caliper, CaliperKind
 from app.reading.model import Reading
@@ -31,18 +37,23 @@ class Span:
     estimate : Estimate or None
         ms for a time (never negative) and for the pitch of a comb's teeth, mV for a height
         (up is positive); None where refused.
-    leg : LegError or None
-        Of one of its legs.
+    resolution_share : ndarray of float64, shape (S,)
+        What is left of the sigma of each source of `estimate` without the pen's share, 0 to
+        1; empty without a map.
     covered : bool
         Whether the grid was seen at both legs.
+    step_mm : float
+        The coarser step in which its legs could be placed, on the paper along its axis; of a
+        comb what that is worth for the pitch. 0: not known, or finer than a picture pixel.
     refusal : str
         Why there is none, as the end of a sentence that names the caliper; else empty.
     """
 
     caliper: Caliper
     estimate: Estimate | None
-    leg: LegError | None
+    resolution_share: FloatArray
     covered: bool
+    step_mm: float = 0.0
     refusal: str = ""
 
 
@@ -55,7 +66,7 @@ def measure_spans(reading: Reading, calipers: Sequence[Caliper]) -> list[Span]:
     """Measure calipers on a reading's map and calibration, in the order given."""
     sheet_map = reading.sheet_map
     if sheet_map is None:
-        return [Span(item, None, None, True, NO_SCALE) for item in calipers]
+        return [Span(item, None, np.empty(0), True, refusal=NO_SCALE) for item in calipers]
     if not calipers:
         return []
     ends_px = np.stack([item.ends_px() for item in calipers])
@@ -75,7 +86,12 @@ def measure_spans(reading: Reading, calipers: Sequence[Caliper]) -> list[Span]:
         estimate = None
         if not refusal:
             estimate = _estimate(reading.calibration, item, span_mm[row], scale_mm[row], legs)
-        spans.append(Span(item, estimate, legs.error[axis], bool(covered[row]), refusal))
+        step_mm = max(item.start.step_px, item.end.step_px) / pitch_px_per_mm(sheet_map, axis)
+        if axis is Axis.ALONG:
+            step_mm /= item.teeth - 1
+        spans.append(
+            Span(item, estimate, legs.resolution_share, bool(covered[row]), step_mm, refusal)
+        )
     return spans
 
 
@@ -83,22 +99,26 @@ class _Legs:
     """The error sources of a set of calipers: two scales, then one for each distinct leg."""
 
     def __init__(self, sheet_map: SheetMap, calipers: Sequence[Caliper]) -> None:
-        self.error = {axis: leg_error(sheet_map, axis) for axis in Axis}
-        self._place: dict[tuple[Axis, float, float], int] = {}
+        step_px: dict[tuple[Axis, float, float], float] = {}
         for item in calipers:
             for end in (item.start, item.end):
                 key = (axis_of(item), end.x_px, end.y_px)
-                self._place.setdefault(key, len(Axis) + len(self._place))
+                # One leg has one error: where two calipers disagree, the coarser.
+                step_px[key] = max(step_px.get(key, 0.0), end.step_px)
+        errors = [leg_error(sheet_map, key[0], step) for key, step in step_px.items()]
+        self.resolution_share = np.array([1.0] * len(Axis) + [e.resolution_share for e in errors])
+        self._sigma_mm = [e.sigma_mm for e in errors]
+        self._place = {key: index for index, key in enumerate(step_px)}
 
     def sources(self, caliper: Caliper, sign: float, scale_mm: FloatArray) -> FloatArray:
         """Effect of one sigma of each source on ``sign * (end - start)``, in mm."""
         axis = axis_of(caliper)
-        effect = np.zeros(len(Axis) + len(self._place))
+        effect = np.zeros(len(self.resolution_share))
         # A longer square makes every span shorter in the same proportion.
         effect[axis.value] = scale_mm[axis.value]
         for end, direction in ((caliper.start, -sign), (caliper.end, sign)):
             index = self._place[axis, end.x_px, end.y_px]
-            effect[index] += direction * self.error[axis].sigma_mm
+            effect[len(Axis) + index] += direction * self._sigma_mm[index]
         return effect
 
 

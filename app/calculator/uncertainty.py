@@ -4,9 +4,10 @@ The model (law of propagation with correlations, JCGM 100:2008, 5.2.2, from memo
 
 * the map's scale along each axis is one shared error: averaging beats does not reduce it;
 * each leg has its own error, the quadrature sum of the pen's share (uniform over half an
-  assumed pen width of 0.4 mm: common practice, no source), one picture pixel (px/√12) and
-  the printed grid's scatter. Two spans that use the very same leg share its error, so in
-  the mean of a chain of RR intervals only the two outer legs remain;
+  assumed pen width of 0.4 mm: common practice, no source), one picture pixel or, where that
+  is coarser, the step in which the leg could be placed (step/√12), and the printed grid's
+  scatter. Two spans that use the very same leg share its error, so in the mean of a chain
+  of RR intervals only the two outer legs remain;
 * a span placed three times or more has the reader's own repeatability in the place of the
   pen's share;
 * the mean of three beats or more is no surer than their spread says, except for RR: there
@@ -51,7 +52,8 @@ class LegError:
     pen_mm : float
         The pen's share, which a reader's own repeatability can replace.
     resolution_mm : float
-        One pixel of the picture and the printed grid's scatter, always there.
+        One pixel of the picture, or the step the leg was placed in where that is coarser, and
+        the printed grid's scatter; always there.
     """
 
     pen_mm: float
@@ -68,13 +70,17 @@ class LegError:
         return self.resolution_mm / self.sigma_mm
 
 
-def leg_error(sheet_map: SheetMap, axis: Axis) -> LegError:
-    """The error of one leg placed on a picture, along one axis."""
-    pitch = (sheet_map.x_pitch_px_per_mm, sheet_map.y_pitch_px_per_mm)[axis.value]
-    pixel_mm = 1.0 / pitch / math.sqrt(12.0)
+def pitch_px_per_mm(sheet_map: SheetMap, axis: Axis) -> float:
+    """Length of one small square along an axis, in picture_px."""
+    return (sheet_map.x_pitch_px_per_mm, sheet_map.y_pitch_px_per_mm)[axis.value]
+
+
+def leg_error(sheet_map: SheetMap, axis: Axis, step_px: float = 0.0) -> LegError:
+    """The error of one leg placed on a picture, along one axis, in steps of `step_px`."""
+    step_mm = max(1.0, step_px) / pitch_px_per_mm(sheet_map, axis)
     return LegError(
         pen_mm=0.5 * PEN_WIDTH_MM / math.sqrt(12.0),
-        resolution_mm=math.hypot(pixel_mm, sheet_map.scatter_mm),
+        resolution_mm=math.hypot(step_mm / math.sqrt(12.0), sheet_map.scatter_mm),
     )
 
 
@@ -125,20 +131,25 @@ def sample_sd(numbers: Sequence[float]) -> float | None:
     return float(np.std(numbers, ddof=1)) if len(numbers) > 1 else None
 
 
-def repeated(spans: Sequence[Estimate], leg: LegError) -> Estimate:
+def repeated(spans: Sequence[Estimate], resolution_share: FloatArray) -> Estimate:
     """One beat from all placings of the same span (at least one).
 
     From three placings on, their standard deviation takes the place of the assumed pen's
-    share; the picture's resolution stays, so that copies of one caliper cannot claim none.
+    share; the resolution stays, so that copies of one caliper cannot claim none.
+
+    Parameters
+    ----------
+    spans : sequence of Estimate
+    resolution_share : ndarray of float64, shape (S,)
+        What is left of each shared source's sigma without the pen's share, 0 to 1; 1 for the
+        scales. Not modified.
     """
     count = len(spans)
     mean = plain_mean(spans)
     if count < REPEATS_NEEDED:
         return mean
-    shared = mean.shared.copy()
-    shared[_SCALES:] *= leg.resolution_share
     own = float(np.var([span.value for span in spans], ddof=1)) / count
-    return Estimate(mean.value, shared, own)
+    return Estimate(mean.value, mean.shared * resolution_share, own)
 
 
 def mean_of(beats: Sequence[Estimate]) -> Estimate:

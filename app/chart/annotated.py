@@ -10,6 +10,7 @@ from PIL import Image, ImageDraw
 from PIL.PngImagePlugin import PngInfo
 
 from app.calculator import Value
+from app.calculator.display import with_mark
 from app.chart.caliper_lines import mark_ticks
 from app.chart.errors import PictureDiffers
 from app.chart.fonts import Colour, Face, face
@@ -21,9 +22,7 @@ from app.chart.targets import check_target
 from app.chart.values_file import values_as_json
 from app.chart.wording import (
     DISCLAIMER,
-    UNCONFIRMED_MARK,
     caliper_name,
-    is_unconfirmed,
     short_value_text,
     value_text,
 )
@@ -185,11 +184,10 @@ def _label_texts(name: str, caliper_id: int, values: tuple[Value, ...]) -> list[
     first = values[0] if values else None
     if first is None or first.value is None:
         return [name, f"#{caliper_id}"]
-    mark = f" {UNCONFIRMED_MARK}" if is_unconfirmed(first) else ""
     return [
         f"{name} {value_text(first)}",
         f"{name} {short_value_text(first)}",
-        f"{name}{mark}",
+        with_mark(name, first),
         f"#{caliper_id}",
     ]
 

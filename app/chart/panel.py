@@ -5,7 +5,7 @@ from __future__ import annotations
 from itertools import chain
 
 from app.calculator import Value
-from app.calculator.display import shown_number, with_unit
+from app.calculator.display import UNCONFIRMED_MARK, is_unconfirmed, shown_number, with_unit
 from app.chart.blocks import Area, Block, beside, columns, paragraph, stack
 from app.chart.fonts import Colour, face
 from app.chart.report import Report, footnotes
@@ -13,11 +13,9 @@ from app.chart.table import Column, Look, table
 from app.chart.wording import (
     DISCLAIMER,
     PLUS_MINUS_MEANS,
-    UNCONFIRMED_MARK,
     caliper_name,
     grid_sentences,
     hand_figure_text,
-    is_unconfirmed,
     moment,
     setting_sentence,
     settings_of,

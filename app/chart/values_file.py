@@ -196,6 +196,8 @@ def _calipers(report: Report) -> list[Json]:
             "beat": caliper.beat,
             "start_px": [caliper.start.x_px, caliper.start.y_px],
             "end_px": [caliper.end.x_px, caliper.end.y_px],
+            "start_step_px": caliper.start.step_px,
+            "end_step_px": caliper.end.step_px,
             "values": [_value(value) for value in values],
         }
         for caliper, values in zip(report.reading.calipers, report.by_caliper, strict=True)

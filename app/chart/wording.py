@@ -7,7 +7,7 @@ from collections.abc import Sequence
 
 from app.calculator import Value, format_value
 from app.calculator.catalogue import CATALOGUE
-from app.calculator.display import shown_number, with_unit
+from app.calculator.display import shown_number, with_mark, with_unit
 from app.reading import (
     Calibration,
     Caliper,
@@ -28,7 +28,6 @@ PLUS_MINUS_MEANS = (
     "± is two standard errors of the grid and the marks. It does not contain a recorder whose "
     "speed or gain is off, nor two readers' different idea of where a wave ends."
 )
-UNCONFIRMED_MARK = "?"
 
 _RESTS_ON = {
     Evidence.DEFAULT: "a default, nothing on the page",
@@ -125,20 +124,11 @@ def unconfirmed_sentences(reading: Reading, shown_sha256: str | None = None) -> 
     return said
 
 
-def is_unconfirmed(value: Value) -> bool:
-    """Whether a value rests on a setting nobody has confirmed, or on an uncertain scale."""
-    return any(
-        caution.code.endswith("_unconfirmed") or caution.code == "scale_uncertain"
-        for caution in value.cautions
-    )
-
-
 def value_text(value: Value) -> str:
     """A value with its ±, marked while what it rests on is not confirmed."""
     if value.value is None:
         return "no value"
-    text = format_value(value)
-    return f"{text} {UNCONFIRMED_MARK}" if is_unconfirmed(value) else text
+    return with_mark(format_value(value), value)
 
 
 def spoken(values: Sequence[Value]) -> str:
@@ -151,8 +141,8 @@ def short_value_text(value: Value) -> str:
     """A value without its ±, for a label in a crowd; the panel has it in full."""
     if value.value is None or value.plus_minus is None:
         return value_text(value)
-    text = with_unit(shown_number(value.value, value.plus_minus), value.unit)
-    return f"{text} {UNCONFIRMED_MARK}" if is_unconfirmed(value) else text
+    number = shown_number(value.value, value.plus_minus)
+    return with_mark(with_unit(number, value.unit), value)
 
 
 def hand_figure_text(figure: HandFigure) -> str:

@@ -98,8 +98,17 @@ def _size(value: object, where: str) -> tuple[int, int]:
     return numbers[0], numbers[1]
 
 
-def _point(value: object, where: str) -> PicturePoint:
-    return PicturePoint(*_pair(value, where))
+def _step(value: object, where: str) -> float:
+    step = _number(value, where)
+    if step < 0.0:
+        raise DamagedError(where, "zero or more")
+    return step
+
+
+def _point(fields: _Fields, name: str) -> PicturePoint:
+    """A place and its step; readings of earlier versions have no step."""
+    place_px = fields.take(f"{name}_px", _pair)
+    return PicturePoint(*place_px, fields.take_or_none(f"{name}_step_px", _step) or 0.0)
 
 
 def _coverage(value: object, where: str) -> Coverage:
@@ -174,8 +183,8 @@ def _caliper(value: object, where: str) -> Caliper:
     return Caliper(
         caliper_id=fields.take("caliper_id", _whole),
         kind=CaliperKind(kind_name),
-        start=fields.take("start_px", _point),
-        end=fields.take("end_px", _point),
+        start=_point(fields, "start"),
+        end=_point(fields, "end"),
         quantity=fields.take_or_none("quantity", _text),
         lead=fields.take_or_none("lead", _text),
         beat=fields.take_or_none("beat", _whole),
@@ -275,6 +284,8 @@ def _caliper_to_json(caliper: Caliper) -> Json:
         "kind": caliper.kind.value,
         "start_px": [caliper.start.x_px, caliper.start.y_px],
         "end_px": [caliper.end.x_px, caliper.end.y_px],
+        "start_step_px": caliper.start.step_px,
+        "end_step_px": caliper.end.step_px,
         "quantity": caliper.quantity,
         "lead": caliper.lead,
         "beat": caliper.beat,

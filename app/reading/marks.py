@@ -23,14 +23,25 @@ class CaliperKind(StrEnum):
 
 @dataclass(frozen=True, slots=True)
 class PicturePoint:
-    """A place on the picture, in picture_px."""
+    """A place on the picture, in picture_px.
+
+    Attributes
+    ----------
+    x_px, y_px : float
+    step_px : float
+        Distance to the neighbouring places the hand could have chosen instead when it put
+        the mark there; 0: not known, or finer than a pixel of the picture.
+    """
 
     x_px: float
     y_px: float
+    step_px: float = 0.0
 
     def __post_init__(self) -> None:
         if not (math.isfinite(self.x_px) and math.isfinite(self.y_px)):
             raise ValueError("a mark must lie at a finite place on the picture")
+        if not (math.isfinite(self.step_px) and self.step_px >= 0.0):
+            raise ValueError("the step a mark was placed in must be finite and not negative")
 
 
 @dataclass(frozen=True, slots=True)

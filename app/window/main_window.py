@@ -307,7 +307,8 @@ class MainWindow(QMainWindow):
         reading = self.document.reading
         sheet_map = None if reading is None else reading.sheet_map
         is_placing = self.view.is_placing()
-        words = coarse_zoom_statement(self.view.zoom(), sheet_map) if is_placing else ""
+        zoom = self.view.screen_px_per_picture_px()
+        words = coarse_zoom_statement(zoom, sheet_map) if is_placing else ""
         self.prompt.set_hint(words)
 
 

@@ -6,6 +6,7 @@ import math
 
 import numpy as np
 
+from app.calculator.caution_rules import COARSE_STEP_MM
 from app.reading.calibration import Calibration, Evidence, Setting
 from app.reading.marks import PicturePoint
 from app.reading.model import Reading
@@ -13,8 +14,6 @@ from imaging.sheet_map import SheetMap
 
 # Paper is ruled within 2 % (EC11, from memory); the rest is for a box drawn by eye.
 _BELIEVABLE_STRETCH_PERCENT = 5.0
-# Half a pen's width (common practice, no source): 8 ms at 25 mm/s.
-_COARSE_SCREEN_PX_MM = 0.2
 _EVIDENCE_WORDS = {
     Evidence.DEFAULT: "default",
     Evidence.PULSE: "pulse",
@@ -93,17 +92,16 @@ def pointer_statement(point: PicturePoint | None, sheet_map: SheetMap | None) ->
     return f"x {x_mm:.1f} mm, y {y_mm:.1f} mm"
 
 
-def coarse_zoom_statement(view_px_per_picture_px: float, sheet_map: SheetMap | None) -> str:
+def coarse_zoom_statement(screen_px_per_picture_px: float, sheet_map: SheetMap | None) -> str:
     """Why to zoom in before marking; empty where the screen shows enough.
 
-    The ± of a mark holds half a pen's width and one picture pixel. A screen pixel that is
-    larger than half a pen's width would add to that what the ± does not know.
+    The limit is that of the caution beside a value whose marks were placed so.
     """
     if sheet_map is None:
         return ""
     pitch_px_per_mm = min(sheet_map.x_pitch_px_per_mm, sheet_map.y_pitch_px_per_mm)
-    screen_px_mm = 1.0 / (view_px_per_picture_px * pitch_px_per_mm)
-    if screen_px_mm <= _COARSE_SCREEN_PX_MM:
+    screen_px_mm = 1.0 / (screen_px_per_picture_px * pitch_px_per_mm)
+    if screen_px_mm <= COARSE_STEP_MM:
         return ""
     return (
         f"One screen pixel is {screen_px_mm:.1f} mm here: zoom in with the wheel, or press 1, "

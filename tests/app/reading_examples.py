@@ -44,7 +44,7 @@ def example_caliper(
     beat: int | None = 1,
 ) -> Caliper:
     """A caliper 20 px wide and 10 px high."""
-    start, end = PicturePoint(100.0, 200.0), PicturePoint(120.0, 190.0)
+    start, end = PicturePoint(100.0, 200.0, 2.5), PicturePoint(120.0, 190.0, 0.25)
     return Caliper(caliper_id, kind, start, end, quantity, lead, beat)
 
 

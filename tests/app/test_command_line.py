@@ -359,6 +359,22 @@ def test_details_are_in_the_log_when_asked_for(tmp_path: Path) -> None:
     assert quiet.stderr in verbose.stderr
 
 
+@pytest.mark.parametrize("words", [["--verbose"], ["--verbose", "a.png"], ["a.png", "--verbose"]])
+def test_the_window_tells_more_too_when_asked(
+    words: list[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """What a fault's sentence advises is accepted by every command."""
+    asked: list[bool] = []
+    opened: list[object] = []
+    monkeypatch.setattr("app.screen_check.screen_trouble", lambda: "")
+    monkeypatch.setattr("app.window.main.run", lambda path: opened.append(path) or 0)
+    monkeypatch.setattr("app.command_line._set_up_log", lambda *, verbose: asked.append(verbose))
+    assert main(words) == 0
+    assert main([word for word in words if word != "--verbose"]) == 0
+    assert asked == [True, False]
+    assert opened == ["a.png" if "a.png" in words else None] * 2
+
+
 def test_no_qt_is_loaded_by_the_commands(reading_path: Path) -> None:
     script = """
 import sys

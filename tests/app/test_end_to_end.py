@@ -114,8 +114,11 @@ def wait_for(look: Callable[[], Any], what: str) -> Any:
 def screen(tmp_path: Path) -> Iterator[Screen]:
     """A virtual screen of our own."""
     reading_end, writing_end = os.pipe()
+    # By itself the server starts anew whenever its last client has gone, and refuses those who
+    # come meanwhile.
+    options = ["-screen", "0", SCREEN, "-nolisten", "tcp", "-noreset"]
     server = subprocess.Popen(
-        ["Xvfb", "-displayfd", str(writing_end), "-screen", "0", SCREEN, "-nolisten", "tcp"],
+        ["Xvfb", "-displayfd", str(writing_end), *options],
         pass_fds=[writing_end],
         stderr=subprocess.DEVNULL,
     )

@@ -1,21 +1,17 @@
 """Panning a marked page at 1:1, beside a bare view of the same pixmap.
 
 Run it for the figures: ``python -m tests.bench.bench_canvas``. Both views are in one process
-on a real X server (Xvfb is started where there is no DISPLAY) and take turns, so that a busy
-machine slows both down. A frame is over when its paint event has been handled.
+on a real X server of their own and take turns, so that a busy machine slows both down. A
+frame is over when its paint event has been handled.
 """
 
 from __future__ import annotations
 
 import json
-import os
-import shutil
 import statistics
 import subprocess
 import sys
 import time
-from collections.abc import Iterator
-from contextlib import contextmanager
 from dataclasses import asdict, dataclass, replace
 from pathlib import Path
 
@@ -30,6 +26,7 @@ from app.window.canvas import SheetView
 from app.window.document import Document
 from imaging.picture import Picture
 from tests.app.reading_examples import example_map
+from tests.bench.screen import virtual_screen
 
 REPOSITORY = Path(__file__).resolve().parent.parent.parent
 PAGE_PX = (4000, 3000)  # 12 megapixels
@@ -59,18 +56,13 @@ class Panning:
     ratio: float
 
 
-def x_server_is_there() -> bool:
-    """Whether there is a display, or Xvfb to make one."""
-    return "DISPLAY" in os.environ or shutil.which("Xvfb") is not None
-
-
 def measure_panning() -> tuple[Panning, Panning]:
     """Pan both views, in a process of their own on a real X server.
 
     The first figures are of panning as Qt paints it: what stays on the screen is moved, the
     strip that appears is painted. For the second every frame is painted whole.
     """
-    with _x_server() as environment:
+    with virtual_screen(_SCREEN) as environment:
         finished = subprocess.run(
             [sys.executable, "-m", "tests.bench.bench_canvas", "--here"],
             cwd=REPOSITORY,
@@ -82,31 +74,6 @@ def measure_panning() -> tuple[Panning, Panning]:
         )
     panning, whole = json.loads(finished.stdout.splitlines()[-1])
     return Panning(**panning), Panning(**whole)
-
-
-@contextmanager
-def _x_server() -> Iterator[dict[str, str]]:
-    """The environment of a program on a display: the present one, or one of Xvfb's."""
-    environment = {**os.environ, "QT_QPA_PLATFORM": "xcb"}
-    if "DISPLAY" in environment:
-        yield environment
-        return
-    reading_end, writing_end = os.pipe()
-    server = subprocess.Popen(
-        ["Xvfb", "-displayfd", str(writing_end), "-screen", "0", _SCREEN, "-nolisten", "tcp"],
-        pass_fds=[writing_end],
-        stderr=subprocess.DEVNULL,
-    )
-    os.close(writing_end)
-    try:
-        with os.fdopen(reading_end) as numbers:
-            display = numbers.readline().strip()
-        if not display:
-            raise RuntimeError("Xvfb found no display to open here")
-        yield environment | {"DISPLAY": f":{display}"}
-    finally:
-        server.terminate()
-        server.wait(10.0)
 
 
 class _Paints(QObject):

@@ -6,15 +6,14 @@ process on an X server of its own; the two take turns, so that a busy machine sl
 
 from __future__ import annotations
 
-import os
 import statistics
 import subprocess
 import sys
 import time
-from collections.abc import Iterator
-from contextlib import contextmanager
 from dataclasses import dataclass
 from pathlib import Path
+
+from tests.bench.screen import virtual_screen
 
 REPOSITORY = Path(__file__).resolve().parent.parent.parent
 SAMPLE = REPOSITORY / "sample_scans" / "twelve_lead_25.jpg"
@@ -86,41 +85,22 @@ class Startup:
         return self.smallsquare_s / self.bare_s
 
 
-@contextmanager
-def x_server() -> Iterator[str]:
-    """A virtual screen of our own; its display."""
-    reading_end, writing_end = os.pipe()
-    with subprocess.Popen(
-        ["Xvfb", "-displayfd", str(writing_end), "-screen", "0", SCREEN, "-nolisten", "tcp"],
-        pass_fds=[writing_end],
-        stderr=subprocess.DEVNULL,
-    ) as server:
-        os.close(writing_end)
-        with os.fdopen(reading_end) as numbers:
-            display = numbers.readline().strip()
-        try:
-            yield f":{display}"
-        finally:
-            server.terminate()
-
-
 def measure_startup(picture: Path = SAMPLE, runs: int = 7) -> Startup:
     """Start both programs `runs` times in turn, after one start of each that fills caches."""
     seconds: dict[str, list[float]] = {_BARE_VIEWER: [], _SMALLSQUARE: []}
-    with x_server() as display:
+    with virtual_screen(SCREEN) as environment:
         for run in range(runs + 1):
             for script, times in seconds.items():
-                taken_s = _seconds_to_first_picture(script, picture, display)
+                taken_s = _seconds_to_first_picture(script, picture, environment)
                 if run > 0:
                     times.append(taken_s)
     bare, smallsquare = (statistics.median(times) for times in seconds.values())
     return Startup(bare, smallsquare)
 
 
-def _seconds_to_first_picture(script: str, picture: Path, display: str) -> float:
-    environment = {**os.environ, "DISPLAY": display, "QT_QPA_PLATFORM": "xcb"}
+def _seconds_to_first_picture(script: str, picture: Path, environment: dict[str, str]) -> float:
     # As installed: compiled once, not at every start.
-    environment.pop("PYTHONDONTWRITEBYTECODE", None)
+    environment = {k: v for k, v in environment.items() if k != "PYTHONDONTWRITEBYTECODE"}
     begun = time.time()
     finished = subprocess.run(
         [sys.executable, "-c", script, str(picture)],

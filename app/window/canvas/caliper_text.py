@@ -5,11 +5,10 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from app.calculator import Value, format_value, measure_caliper
-from app.calculator.display import shown_number, with_unit
+from app.calculator.display import shown_number, with_mark, with_unit
 from app.reading import Caliper, CaliperKind, Reading, quantity
 
 NO_GRID = "no grid yet"
-_UNCONFIRMED_MARK = "?"
 
 _FREE_NAMES = {
     CaliperKind.TIME: "Time",
@@ -67,14 +66,8 @@ def caliper_value(reading: Reading, caliper: Caliper) -> ValueText:
     if reading.sheet_map is None:
         return ValueText(NO_GRID, NO_GRID)
     values = measure_caliper(reading, caliper)
-    mark = f" {_UNCONFIRMED_MARK}" if any(map(_is_unconfirmed, values)) else ""
     full = ", ".join(format_value(value) for value in values)
-    return ValueText(full + mark, _number_alone(values[0]) + mark)
-
-
-def _is_unconfirmed(value: Value) -> bool:
-    codes = [caution.code for caution in value.cautions]
-    return any(code.endswith("_unconfirmed") or code == "scale_uncertain" for code in codes)
+    return ValueText(with_mark(full, *values), with_mark(_number_alone(values[0]), *values))
 
 
 def _number_alone(value: Value) -> str:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 
 from PySide6.QtCore import QEvent, QPoint, QPointF, QRect, QRectF, Qt, Signal
 from PySide6.QtGui import (
@@ -221,6 +222,10 @@ class SheetView(QGraphicsView):
         """View px per picture px."""
         return self._camera.zoom
 
+    def screen_px_per_picture_px(self) -> float:
+        """The zoom in pixels of the screen, of which a view px may have several."""
+        return self._camera.zoom * self.devicePixelRatioF()
+
     def set_grid_visible(self, visible: bool) -> None:
         """Draw the fitted grid over the picture, or not."""
         self._grid.setVisible(visible)
@@ -277,8 +282,9 @@ class SheetView(QGraphicsView):
         view_point = self._mouse.view_point
         if view_point is None or not self.viewport().rect().contains(view_point.toPoint()):
             view_point = QPointF(self.viewport().rect().center())
-        picture = self.pointer_at(view_point).picture
-        return self.frame().clamped(picture.x(), picture.y())
+        pointer = self.pointer_at(view_point)
+        place = self.frame().clamped(pointer.picture.x(), pointer.picture.y())
+        return replace(place, step_px=pointer.step_px)
 
     def after_placing_step(self) -> None:
         """Tell what is asked for now, or that it is over."""
@@ -336,7 +342,8 @@ class SheetView(QGraphicsView):
         """What a pointer event at a view point means: the middle of that screen pixel."""
         half = 0.5 / self.devicePixelRatioF()
         middle = QPointF(view_point.x() + half, view_point.y() + half)
-        return Pointer(view_point, self._camera.scene_from_view(middle))
+        step_px = 1.0 / self.screen_px_per_picture_px()
+        return Pointer(view_point, self._camera.scene_from_view(middle), step_px)
 
     def hit(self, view_point: QPointF) -> Hit | None:
         """The caliper, or leg of one, at a view point."""

@@ -7,7 +7,6 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from app.calculator import (
-    Caution,
     Comparison,
     Value,
     compare_all,
@@ -15,13 +14,13 @@ from app.calculator import (
     measure_caliper,
     work_out,
 )
+from app.calculator.display import is_doubt, is_unconfirmed, with_mark
 from app.reading.marks import Caliper, CaliperKind
 from app.reading.model import HandFigure, Reading
 from app.window.panels.lines import MARKED_VALUE_KEYS, Line
 
 RowId = tuple[str, int | str, str | None]
 NO_VALUE = "–"
-UNCONFIRMED_MARK = "?"
 _UNITS = {
     CaliperKind.TIME: "ms",
     CaliperKind.COMB: "ms",
@@ -89,14 +88,14 @@ class Row:
     @property
     def is_unconfirmed(self) -> bool:
         """Whether the value rests on something nobody has confirmed."""
-        return self.given is not None and unconfirmed(self.given)
+        return self.given is not None and is_unconfirmed(self.given)
 
     @property
     def other_cautions(self) -> int:
         """Cautions beside those that the question mark stands for."""
         if self.given is None:
             return 0
-        return sum(not _is_doubt(caution) for caution in self.given.cautions)
+        return sum(not is_doubt(caution) for caution in self.given.cautions)
 
 
 @dataclass(frozen=True, slots=True)
@@ -114,23 +113,13 @@ class _Worked:
         return next((c for c in self.comparisons if (c.key, c.lead) == (key, lead)), None)
 
 
-def unconfirmed(value: Value) -> bool:
-    """Whether a value rests on a setting nobody has confirmed, or on an uncertain scale."""
-    return any(_is_doubt(caution) for caution in value.cautions)
-
-
-def _is_doubt(caution: Caution) -> bool:
-    return caution.code.endswith("_unconfirmed") or caution.code == "scale_uncertain"
-
-
 def value_text(value: Value | None) -> str:
     """A value as the worksheet shows it, marked while what it rests on is not confirmed."""
     if value is None:
         return NO_VALUE
     if value.value is None:
         return "refused"
-    text = format_value(value)
-    return f"{text} {UNCONFIRMED_MARK}" if unconfirmed(value) else text
+    return with_mark(format_value(value), value)
 
 
 def worksheet_rows(reading: Reading, lines: Sequence[Line]) -> tuple[Row, ...]:

@@ -116,6 +116,17 @@ def rr_chain(widths_mm: Sequence[float], *, lead: str = "II", y_mm: float = 30.0
     ]
 
 
+def in_steps(caliper: Caliper, start_mm: float, end_mm: float | None = None) -> Caliper:
+    """The caliper as if its legs were placed in such steps on the paper of `exact_map`."""
+    start_px = start_mm * PX_PER_MM
+    end_px = start_px if end_mm is None else end_mm * PX_PER_MM
+    return replace(
+        caliper,
+        start=replace(caliper.start, step_px=start_px),
+        end=replace(caliper.end, step_px=end_px),
+    )
+
+
 def reading_of(
     *calipers: Caliper,
     sheet_map: SheetMap | None = None,

@@ -17,7 +17,14 @@ from app.calculator.uncertainty import Axis
 from app.calculator.values import Caution
 from app.reading import Calibration, Evidence, Reading, Setting
 from imaging.sheet_map import SheetMap
-from tests.app.calculator.sheets import calibration, estimate, exact_map, reading_of, time
+from tests.app.calculator.sheets import (
+    calibration,
+    estimate,
+    exact_map,
+    in_steps,
+    reading_of,
+    time,
+)
 
 
 def said(
@@ -27,10 +34,11 @@ def said(
     lead: str | None = "II",
     *,
     covered: bool = True,
+    step_mm: float = 0.0,
 ) -> dict[str, str]:
     """Line by code, nothing twice."""
     reading = reading_of(sheet_map=sheet_map, settings=settings)
-    return by_code(sheet_cautions(reading, axis, lead, covered=covered))
+    return by_code(sheet_cautions(reading, axis, lead, covered=covered, step_mm=step_mm))
 
 
 def by_code(cautions: list[Caution]) -> dict[str, str]:
@@ -79,13 +87,13 @@ def test_a_doubtful_scale_stands_first() -> None:
     reading = reading_of(
         sheet_map=exact_map(scale_is_certain=False), settings=calibration(confirmed=False)
     )
-    codes = [caution.code for caution in sheet_cautions(reading, Axis.ALONG, None, covered=True)]
-    assert codes == ["scale_uncertain", "speed_unconfirmed"]
+    cautions = sheet_cautions(reading, Axis.ALONG, None, covered=True, step_mm=0.0)
+    assert [caution.code for caution in cautions] == ["scale_uncertain", "speed_unconfirmed"]
 
 
 def test_without_a_map_only_the_settings_are_doubted() -> None:
     reading = replace(reading_of(settings=calibration(confirmed=False)), sheet_map=None)
-    cautions = sheet_cautions(reading, Axis.ALONG, None, covered=False)
+    cautions = sheet_cautions(reading, Axis.ALONG, None, covered=False, step_mm=0.9)
     assert [caution.code for caution in cautions] == ["speed_unconfirmed"]
 
 
@@ -108,6 +116,28 @@ def test_coarse_is_asked_along_the_axis_that_is_measured() -> None:
     lying = exact_map(16.0, 5.0)
     assert "coarse_picture" not in said(lying)
     assert "coarse_picture" in said(lying, axis=Axis.DOWN)
+
+
+@pytest.mark.parametrize(
+    ("step_mm", "words"),
+    [
+        (0.0, None),
+        (0.2, None),
+        (0.21, "A mark was placed at a coarse zoom, in steps of about 0.21 mm."),
+        (0.4, "A mark was placed at a coarse zoom, in steps of about 0.4 mm."),
+    ],
+)
+def test_a_step_of_more_than_half_a_pen_width_is_said(step_mm: float, words: str | None) -> None:
+    for axis in Axis:
+        assert said(axis=axis, step_mm=step_mm).get("coarse_placing") == words
+
+
+def test_a_nudged_leg_is_coarse_no_more() -> None:
+    coarse, fine = in_steps(time("qrs", 3.0), 0.4), in_steps(time("qrs", 3.0), 0.1)
+    assert set(lines_said(reading_of(coarse))) == {"coarse_placing"}
+    assert lines_said(reading_of(fine)) == {}
+    one_of_two = reading_of(time("qt", 9.0), in_steps(time("qrs", 3.0), 0.1, 0.4))
+    assert set(lines_said(one_of_two)) == {"coarse_placing"}
 
 
 @pytest.mark.parametrize(

@@ -14,6 +14,7 @@ from tests.app.calculator.sheets import (
     calibration,
     exact_map,
     height,
+    in_steps,
     reading_of,
     rr_chain,
     time,
@@ -46,7 +47,7 @@ def rhythm_readings() -> list[Reading]:
 def other_readings() -> list[Reading]:
     """Doubtful sheets, missing marks, small vectors."""
     doubtful = exact_map(5.0, 4.0, seen=False, scale_is_certain=False, source="reader")
-    marks = [time("qt", 10.0), height("r_height", 9.0)]
+    marks = [in_steps(time("qt", 10.0), 0.5), height("r_height", 9.0)]
     readings = [
         reading_of(*marks, sheet_map=doubtful, settings=calibration(confirmed=False)),
     ]

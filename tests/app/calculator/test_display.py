@@ -2,14 +2,21 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 
-from app.calculator import Value, format_value
-from app.calculator.display import shown_number
+from app.calculator import Caution, Value, format_value
+from app.calculator.cautions import TABLE
+from app.calculator.display import is_doubt, is_unconfirmed, shown_number, with_mark
 
 
 def value_of(number: float | None, plus_minus: float | None, unit: str = "ms") -> Value:
     return Value("key", "Name", number, unit, plus_minus, "method", "source", 1)
+
+
+def caution_of(code: str) -> Caution:
+    return Caution(code, "text", "reason", "source")
 
 
 @pytest.mark.parametrize(
@@ -45,3 +52,28 @@ def test_the_last_digit_means_something(
 def test_a_number_alone_is_rounded_as_beside_its_error() -> None:
     assert shown_number(119.6, 8.0) == "120"
     assert shown_number(-119.6, 1.2) == "−119.6"
+
+
+@pytest.mark.parametrize(
+    ("code", "doubts"),
+    [
+        ("speed_unconfirmed", True),
+        ("gain_unconfirmed", True),
+        ("scale_uncertain", True),
+        ("scale_by_hand", False),
+        ("single_beat", False),
+    ],
+)
+def test_what_rests_on_something_unconfirmed_is_marked(code: str, doubts: bool) -> None:
+    caution = caution_of(code)
+    sure = value_of(90.0, 8.0)
+    value = replace(sure, cautions=(caution_of("no_lead"), caution))
+    assert is_doubt(caution) == is_unconfirmed(value) == doubts
+    assert with_mark("90 ms", value) == ("90 ms ?" if doubts else "90 ms")
+    assert with_mark("90 ms, 60 /min", sure, value).endswith("?") == doubts
+    assert with_mark("90 ms") == with_mark("90 ms", sure) == "90 ms"
+
+
+def test_every_doubt_the_table_knows() -> None:
+    doubts = {code for code in TABLE if is_doubt(caution_of(code))}
+    assert doubts == {"speed_unconfirmed", "gain_unconfirmed", "scale_uncertain"}

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 
 import pytest
@@ -13,6 +14,7 @@ from tests.app.calculator.sheets import (
     between,
     calibration,
     height,
+    in_steps,
     reading_of,
     rr_chain,
     time,
@@ -152,6 +154,27 @@ def test_a_deflection_points_to_its_own_side(key: str, height_mm: float, words: 
     if words:
         foot = "top" if key == "r_height" else "lowest point"
         assert line.refusal.endswith(f"its second on the {foot}.")
+
+
+def test_placings_at_a_coarse_zoom_keep_their_resolution() -> None:
+    """Three that agree show no spread, and still were placed in steps of 0.4 mm."""
+    at_mm = [(8.0, y_mm) for y_mm in (20.0, 21.0, 22.0)]
+    fine = [time("qrs", 2.0, at_mm=place_mm) for place_mm in at_mm]
+    line = measure_lines(reading_of(*(in_steps(item, 0.4) for item in fine))).line("qrs", "II")
+    assert line is not None
+    assert line.mean is not None
+    assert line.mean.sigma == pytest.approx(40.0 * 0.4 * math.sqrt(2.0 / 12.0 / 3.0))
+    assert line.step_mm == pytest.approx(0.4)
+
+
+def test_the_coarsest_mark_counts_for_the_line() -> None:
+    beats = [time("qrs", 2.0, beat=n, at_mm=(20.0 * n, 20.0)) for n in (1, 2)]
+    line = measure_lines(reading_of(in_steps(beats[0], 0.1, 0.3), beats[1])).line("qrs", "II")
+    assert line is not None
+    assert line.step_mm == pytest.approx(0.3)
+    refused = measure_lines(reading_of(in_steps(time("qrs", 0.0), 0.3))).line("qrs", "II")
+    assert refused is not None
+    assert (refused.mean, refused.step_mm) == (None, pytest.approx(0.3))
 
 
 def test_a_line_knows_whether_the_grid_was_seen() -> None:

@@ -15,6 +15,7 @@ from tests.app.calculator.sheets import (
     codes,
     exact_map,
     height,
+    in_steps,
     number,
     reading_of,
     time,
@@ -90,6 +91,19 @@ def test_its_cautions_are_those_of_the_sheet(caliper: Caliper) -> None:
             "coarse_picture",
             "unequal_pitch",
         }
+
+
+@pytest.mark.parametrize("caliper", ONE_OF_EACH)
+def test_a_coarse_zoom_widens_its_error_and_is_said(caliper: Caliper) -> None:
+    for fine, coarse in zip(
+        measure_caliper(reading_of(), caliper),
+        measure_caliper(reading_of(), in_steps(caliper, 0.9)),
+        strict=True,
+    ):
+        assert fine.plus_minus is not None
+        assert coarse.plus_minus is not None
+        assert coarse.plus_minus > 2.0 * fine.plus_minus
+        assert (codes(fine), codes(coarse)) == (set(), {"coarse_placing"})
 
 
 def test_a_quantity_of_another_kind_is_measured_as_it_stands() -> None:

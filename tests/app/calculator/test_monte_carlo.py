@@ -17,6 +17,7 @@ from tests.app.calculator.sheets import (
     PX_PER_MM,
     exact_map,
     height,
+    in_steps,
     number,
     reading_of,
     rr_chain,
@@ -194,3 +195,46 @@ def test_the_mean_of_three_beats_or_more_is_not_understated(noise: Noise, beats:
     assert by_marks_ms < np.mean(shown_ms) < 1.4 * by_marks_ms
     inside = np.abs(np.array(means_ms) - 400.0) <= np.array(shown_ms)
     assert inside.mean() >= 0.95
+
+
+def rounded(places_mm: Samples, step_mm: float, rng: np.random.Generator) -> Samples:
+    """Places put down on the nearest of a grid of places that lies anywhere."""
+    offset_mm = rng.uniform(0.0, step_mm, DRAWS)
+    return np.round((places_mm - offset_mm) / step_mm) * step_mm + offset_mm
+
+
+@pytest.mark.parametrize(("start_step_mm", "end_step_mm"), [(0.4, 0.4), (0.1, 0.4), (0.02, 0.02)])
+def test_marks_rounded_to_the_screen_scatter_within_the_plus_minus(
+    start_step_mm: float, end_step_mm: float
+) -> None:
+    """A hand that sees exactly where the wave is and can only hit whole screen pixels."""
+    rng = np.random.default_rng(20260103)
+    mark = in_steps(time("qrs", 2.5), start_step_mm, end_step_mm)
+    value = worked(reading_of(mark), "qrs")
+    assert value.plus_minus is not None
+    true_ms = rng.uniform(60.0, 200.0, DRAWS)
+    start = rng.uniform(5.0, 6.0, DRAWS)
+    end = start + true_ms / 40.0
+    read_ms = 40.0 * (rounded(end, end_step_mm, rng) - rounded(start, start_step_mm, rng))
+    errors_ms = read_ms - true_ms
+    assert 2.0 * errors_ms.std() <= value.plus_minus
+    assert np.mean(np.abs(errors_ms) <= value.plus_minus) >= 0.95
+    # The hand's own part is what is left of the ± without pen and, where finer, pixel.
+    pen_ms2 = 2.0 * (40.0 * 0.2) ** 2 / 12.0
+    steps_mm = [max(step, 1.0 / PX_PER_MM) for step in (start_step_mm, end_step_mm)]
+    hand_ms2 = sum((40.0 * step) ** 2 for step in steps_mm) / 12.0
+    assert (value.plus_minus / 2.0) ** 2 == pytest.approx(pen_ms2 + hand_ms2)
+    if min(start_step_mm, end_step_mm) > 1.0 / PX_PER_MM:
+        assert errors_ms.var() == pytest.approx(hand_ms2, rel=TOLERANCE)
+
+
+def test_without_the_step_the_plus_minus_would_be_too_small() -> None:
+    """Why the step is kept: at 0.6 mm to a screen pixel the hand alone goes beyond the pen."""
+    rng = np.random.default_rng(20260104)
+    place = rng.uniform(5.0, 6.0, DRAWS)
+    errors_ms = 40.0 * (rounded(place + 2.5, 0.6, rng) - rounded(place, 0.6, rng) - 2.5)
+    unaware = worked(reading_of(time("qrs", 2.5)), "qrs").plus_minus
+    aware = worked(reading_of(in_steps(time("qrs", 2.5), 0.6)), "qrs").plus_minus
+    assert unaware is not None
+    assert aware is not None
+    assert unaware < 2.0 * errors_ms.std() <= aware

@@ -8,15 +8,18 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
-from app.calculator.spans import NO_SCALE, measure_spans
+from app.calculator.spans import NO_SCALE, Span, measure_spans
 from app.calculator.uncertainty import Axis, leg_error
 from app.reading import Caliper, CaliperKind, PicturePoint, Setting
 from tests.app.calculator.sheets import (
+    PX_PER_MM,
     between,
     calibration,
     exact_map,
     height,
+    in_steps,
     reading_of,
+    rr_chain,
     time,
 )
 
@@ -34,9 +37,10 @@ def test_nothing_is_measured_of_nothing() -> None:
 def test_without_a_map_each_is_refused() -> None:
     reading = replace(reading_of(), sheet_map=None)
     spans = measure_spans(reading, [time("qrs", 3.0), height("r_height", 5.0)])
-    assert [(span.estimate, span.leg, span.refusal) for span in spans] == [
-        (None, None, NO_SCALE)
+    assert [(span.estimate, span.step_mm, span.refusal) for span in spans] == [
+        (None, 0.0, NO_SCALE)
     ] * 2
+    assert all(span.resolution_share.size == 0 for span in spans)
 
 
 @pytest.mark.parametrize(
@@ -101,6 +105,59 @@ def test_the_map_s_scale_is_one_source_and_each_leg_another() -> None:
     assert doubled.estimate is not None
     shared = np.flatnonzero((span.estimate.shared != 0.0) & (doubled.estimate.shared != 0.0))
     assert shared.tolist() == [0]
+
+
+def sigma_ms(span: Span) -> float:
+    assert span.estimate is not None
+    return span.estimate.sigma
+
+
+def test_each_leg_has_the_step_it_was_placed_in() -> None:
+    """sigma² = leg² + leg², each with its own step; 40 ms to a millimetre."""
+    sheet_map = exact_map(8.0, 4.0, scatter_mm=0.02)
+    mark = between("qrs", (4.0, 9.0), (9.0, 9.0))
+    (span,) = measure_spans(reading_of(sheet_map=sheet_map), [in_steps(mark, 0.1, 0.3)])
+    start, end = (leg_error(sheet_map, Axis.ALONG, step_px) for step_px in (1.6, 4.8))
+    assert sigma_ms(span) == pytest.approx(40.0 * math.hypot(start.sigma_mm, end.sigma_mm))
+    assert span.step_mm == pytest.approx(4.8 / 8.0)
+    expected = [1.0, 1.0, start.resolution_share, end.resolution_share]
+    assert span.resolution_share == pytest.approx(expected)
+
+
+def test_a_height_s_step_is_one_down_the_paper() -> None:
+    sheet_map = exact_map(8.0, 4.0)
+    (span,) = measure_spans(
+        reading_of(sheet_map=sheet_map), [in_steps(height("r_height", 5.0), 0.3, 0.1)]
+    )
+    start, end = (leg_error(sheet_map, Axis.DOWN, step_px) for step_px in (4.8, 1.6))
+    assert span.estimate is not None
+    assert span.estimate.sigma == pytest.approx(0.1 * math.hypot(start.sigma_mm, end.sigma_mm))
+    assert span.step_mm == pytest.approx(4.8 / 4.0)
+
+
+def test_a_step_not_known_or_finer_than_a_pixel_changes_nothing() -> None:
+    mark = time("qrs", 3.0)
+    plain, fine = measure_spans(reading_of(), [mark, in_steps(mark, 0.5 / PX_PER_MM)])
+    assert plain.step_mm == 0.0
+    assert sigma_ms(fine) == sigma_ms(plain)
+
+
+def test_a_leg_that_two_spans_share_has_one_error_and_the_coarser_step() -> None:
+    first, second = rr_chain([20.0, 21.0])
+    spans = measure_spans(reading_of(), [in_steps(first, 0.1, 0.4), in_steps(second, 0.2, 0.1)])
+    estimates = [span.estimate for span in spans if span.estimate is not None]
+    shared = math.prod(estimate.shared for estimate in estimates)
+    leg_ms = 40.0 * leg_error(exact_map(), Axis.ALONG, 0.4 * PX_PER_MM).sigma_mm
+    assert np.flatnonzero(shared).tolist() == [3]
+    assert shared[3] == pytest.approx(-(leg_ms**2))
+
+
+def test_a_comb_s_steps_are_divided_by_its_gaps() -> None:
+    comb = between(None, (4.0, 10.0), (64.0, 10.0), kind=CaliperKind.COMB, teeth=4)
+    (pitch,) = measure_spans(reading_of(), [in_steps(comb, 0.3, 0.6)])
+    legs = [leg_error(exact_map(), Axis.ALONG, step * PX_PER_MM).sigma_mm for step in (0.3, 0.6)]
+    assert sigma_ms(pitch) == pytest.approx(40.0 * math.hypot(*legs) / 3.0)
+    assert pitch.step_mm == pytest.approx(0.2)
 
 
 @pytest.mark.parametrize("up_mm", [5.0, -5.0])

@@ -30,6 +30,11 @@ def with_leg(value: float, leg: int, sigma: float = 2.0, legs: int = 8) -> Estim
     return Estimate(value, shared)
 
 
+def shares(of_legs: float, legs: int = 8) -> np.ndarray[tuple[int], np.dtype[np.float64]]:
+    """What the resolution is of each source: all of the scales, so much of every leg."""
+    return np.array([1.0, 1.0] + [of_legs] * legs)
+
+
 def test_a_leg_s_error_has_pen_pixel_and_grid() -> None:
     sheet_map = exact_map(10.0, 5.0, scatter_mm=0.02)
     for axis, pitch in ((Axis.ALONG, 10.0), (Axis.DOWN, 5.0)):
@@ -38,6 +43,13 @@ def test_a_leg_s_error_has_pen_pixel_and_grid() -> None:
         assert error.pen_mm == pytest.approx(0.2 / math.sqrt(12.0))
         assert error.resolution_mm == pytest.approx(math.hypot(pixel_mm, 0.02))
         assert error.sigma_mm == pytest.approx(math.hypot(error.pen_mm, error.resolution_mm))
+
+
+@pytest.mark.parametrize(("step_px", "counts_px"), [(0.0, 1.0), (0.9, 1.0), (1.1, 1.1), (4.0, 4.0)])
+def test_a_step_coarser_than_a_pixel_takes_its_place(step_px: float, counts_px: float) -> None:
+    error = leg_error(exact_map(10.0, 5.0, scatter_mm=0.02), Axis.DOWN, step_px)
+    assert error.resolution_mm == pytest.approx(math.hypot(counts_px / 5.0 / math.sqrt(12.0), 0.02))
+    assert error.pen_mm == pytest.approx(0.2 / math.sqrt(12.0))
 
 
 def test_what_two_numbers_share_cancels_in_their_difference() -> None:
@@ -60,18 +72,19 @@ def test_a_spread_needs_two() -> None:
 
 
 def test_two_placings_are_averaged() -> None:
-    leg = LegError(3.0, 4.0)
-    mean = repeated([with_leg(10.0, 0), with_leg(14.0, 1)], leg)
+    mean = repeated([with_leg(10.0, 0), with_leg(14.0, 1)], shares(0.8))
     assert mean.value == 12.0
     assert mean.placement_variance == pytest.approx(2.0)
 
 
 def test_from_three_placings_the_reader_s_own_repeatability_counts() -> None:
-    leg = LegError(pen_mm=3.0, resolution_mm=4.0)
-    mean = repeated([with_leg(value, leg_no) for leg_no, value in enumerate((9, 12, 15))], leg)
+    kept = LegError(pen_mm=3.0, resolution_mm=4.0).resolution_share
+    spans = [with_leg(value, leg_no) for leg_no, value in enumerate((9, 12, 15))]
+    mean = repeated(spans, shares(kept))
+    assert mean.shared[0] == pytest.approx(1.0)
     resolution = 3 * (2.0 / 3.0 * 0.8) ** 2
     assert mean.placement_variance == pytest.approx(resolution + 9.0 / 3.0)
-    copies = repeated([with_leg(12.0, leg_no) for leg_no in range(3)], leg)
+    copies = repeated([with_leg(12.0, leg_no) for leg_no in range(3)], shares(kept))
     assert copies.placement_variance == pytest.approx(resolution)
 
 

@@ -54,7 +54,8 @@ def caliper(
     teeth: int = 2,
 ) -> Caliper:
     """A caliper between two picture points."""
-    start, end = PicturePoint(*start_px), PicturePoint(*end_px)
+    # Steps finer than a pixel of the picture change no value.
+    start, end = PicturePoint(*start_px, 0.5), PicturePoint(*end_px, 0.75)
     return Caliper(number, kind, start, end, quantity, lead, beat, teeth)
 
 

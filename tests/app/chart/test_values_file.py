@@ -103,6 +103,10 @@ def test_each_caliper_is_there_with_its_place_and_value() -> None:
     reading = full_reading()
     for ours, item in zip(values_document(reading)["calipers"], reading.calipers, strict=True):
         assert ours["start_px"] == [item.start.x_px, item.start.y_px]
+        assert (ours["start_step_px"], ours["end_step_px"]) == (
+            item.start.step_px,
+            item.end.step_px,
+        )
         expected = [v.value for v in measure_caliper(reading, item)]
         assert [v["value"] for v in ours["values"]] == expected
 

@@ -14,7 +14,6 @@ from app.chart.wording import (
     confirmed_by,
     grid_sentences,
     hand_figure_text,
-    is_unconfirmed,
     moment,
     setting_sentence,
     settings_of,
@@ -123,8 +122,6 @@ def test_a_value_that_rests_on_something_unconfirmed_is_marked() -> None:
     assert value_text(marked) == "92 ± 8 ms ?"
     assert short_value_text(value()) == "92 ms"
     assert short_value_text(marked) == "92 ms ?"
-    assert is_unconfirmed(value(cautions=(Caution("scale_uncertain", "t", "r", "s"),)))
-    assert not is_unconfirmed(value(cautions=(Caution("single_beat", "t", "r", "s"),)))
 
 
 def test_a_refused_value_has_no_number() -> None:

@@ -74,6 +74,19 @@ def test_unknown_fields_at_every_level_survive_a_round_trip(saved: Path) -> None
     assert json.loads(saved.read_text("utf-8")) == body
 
 
+def test_the_step_of_each_mark_is_kept_and_none_is_read_from_older_files(saved: Path) -> None:
+    body = json.loads(saved.read_text("utf-8"))
+    first = body["calipers"][0]
+    assert (first["start_step_px"], first["end_step_px"]) == (2.5, 0.25)
+    for name in ("start_step_px", "end_step_px"):
+        first.pop(name)
+    saved.write_text(json.dumps(body), "utf-8")
+    older, untouched = load_reading(saved).calipers
+    assert (older.start.step_px, older.end.step_px) == (0.0, 0.0)
+    assert (older.start.x_px, older.extra) == (100.0, {})
+    assert (untouched.start.step_px, untouched.end.step_px) == (2.5, 0.25)
+
+
 def test_the_way_to_the_picture_is_noted_but_makes_no_other_reading(tmp_path: Path) -> None:
     (tmp_path / "scans").mkdir()
     path = tmp_path / "sheet.reading.json"
@@ -129,6 +142,8 @@ Change = Callable[[dict[str, Any]], object]
         (lambda b: b.update(calipers={}), "'calipers' is not a list"),
         (lambda b: b["calipers"][0].update(start_px=[1.0]), r"start_px' is not a pair"),
         (lambda b: b["calipers"][0].update(start_px=["1", 2]), r"start_px\[0\]' is not a number"),
+        (lambda b: b["calipers"][0].update(end_step_px=-1), "end_step_px' is not zero or more"),
+        (lambda b: b["calipers"][0].update(end_step_px="1"), "end_step_px' is not a number"),
         (lambda b: b["calipers"][0].update(kind="ruler"), "kind of caliper"),
         (lambda b: b["calipers"][0].update(teeth=1), "two teeth"),
         (lambda b: b["calipers"][0].update(teeth=2.5), "whole number"),

@@ -20,6 +20,7 @@ def test_the_last_edit_is_offered(reading_path: Path) -> None:
     later = replace(example_reading(), reader="later")
     append_to_journal(reading_path, later)
     assert read_journal(reading_path) == later
+    assert later.calipers[0].start.step_px > 0.0
 
 
 def test_a_line_cut_short_loses_only_the_last_edit(reading_path: Path) -> None:

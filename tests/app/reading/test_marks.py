@@ -47,3 +47,10 @@ def test_a_comb_needs_two_teeth() -> None:
 def test_a_mark_must_be_finite() -> None:
     with pytest.raises(ValueError, match="finite place"):
         PicturePoint(float("nan"), 0.0)
+
+
+@pytest.mark.parametrize("step_px", [-0.1, float("nan"), float("inf")])
+def test_a_step_is_finite_and_not_negative(step_px: float) -> None:
+    with pytest.raises(ValueError, match="finite and not negative"):
+        PicturePoint(1.0, 2.0, step_px)
+    assert PicturePoint(1.0, 2.0).step_px == 0.0

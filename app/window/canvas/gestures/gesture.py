@@ -20,10 +20,21 @@ CLICK_VIEW_PX = 3.0
 
 @dataclass(frozen=True, slots=True)
 class Pointer:
-    """Where the pointer is, in view px and in picture_px (which may lie off the picture)."""
+    """Where the pointer is.
+
+    Attributes
+    ----------
+    view : QPointF
+        In view px.
+    picture : QPointF
+        In picture_px; may lie off the picture.
+    step_px : float
+        From one screen pixel to the next, in picture_px: places between cannot be pointed at.
+    """
 
     view: QPointF
     picture: QPointF
+    step_px: float
 
     def distance_view_px(self, other: Pointer) -> float:
         """How far the pointer went between two events."""

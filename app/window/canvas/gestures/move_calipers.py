@@ -30,7 +30,8 @@ class MoveCalipers(Gesture):
         step = pointer.picture - self._first.picture
         frame = self._host.frame()
         self._after = tuple(
-            whole_moved(caliper, (step.x(), step.y()), frame) for caliper in self._before
+            whole_moved(caliper, (step.x(), step.y()), frame, hand_step_px=pointer.step_px)
+            for caliper in self._before
         )
         self._host.show_preview(self._after, None)
 

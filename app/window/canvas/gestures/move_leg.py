@@ -34,7 +34,9 @@ class MoveLeg(Gesture):
         origin = frame.px_from_mm(0.0, 0.0)
         there = PicturePoint(origin[0] + step.x(), origin[1] + step.y())
         along_mm = frame.mm_from_px(there)[axis]
-        self._after = leg_moved(self._before, self._tooth, along_mm, frame)
+        self._after = leg_moved(
+            self._before, self._tooth, along_mm, frame, hand_step_px=pointer.step_px
+        )
         mark = self._after.start if self._tooth == 0 else self._after.end
         self._host.show_preview((self._after,), Aim(mark, self._before.kind, crosshair=False))
 

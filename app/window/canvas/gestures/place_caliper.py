@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from app.drawing.shape import measuring_axis
 from app.reading import Caliper, CaliperKind, PicturePoint, Reading
 from app.window.canvas.caliper_text import quantity_name
 from app.window.canvas.gestures.gesture import Aim, Host
@@ -22,7 +23,7 @@ class PlaceCaliper(TwoPlaces):
         quantity: str | None,
         lead: str | None,
     ) -> None:
-        super().__init__(host, aim)
+        super().__init__(host, aim, measuring_axis(kind))
         self.placed_ids: list[int] = []
         self._kind, self._quantity, self._lead = kind, quantity, lead
 

@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from abc import abstractmethod
-
-from PySide6.QtCore import QPointF
+from dataclasses import replace
 
 from app.reading import PicturePoint
 from app.window.canvas.gestures.gesture import Gesture, Host, Pointer
+from app.window.canvas.moves import key_refined
 
 DRAG_VIEW_PX = 6.0
 
@@ -16,10 +16,19 @@ class TwoPlaces(Gesture):
     """Click and click, or press, drag and release; arrow keys and Enter do the same.
 
     It lasts until `is_over`, over many presses and releases of the button.
+
+    Parameters
+    ----------
+    host : Host
+    aim : PicturePoint
+        Where it begins.
+    axis : int or None
+        0 where the places count along the paper, 1 where they count down it, None for both.
     """
 
-    def __init__(self, host: Host, aim: PicturePoint) -> None:
+    def __init__(self, host: Host, aim: PicturePoint, axis: int | None = None) -> None:
         super().__init__(host)
+        self._axis = axis
         self.is_over = False
         self._first: PicturePoint | None = None
         self._aim = aim
@@ -46,7 +55,7 @@ class TwoPlaces(Gesture):
 
     def start(self, pointer: Pointer) -> None:
         """The first press takes the first place; a later one waits for its release."""
-        self._point_at(pointer.picture)
+        self._point_at(pointer)
         if self._first is None:
             self._first = self._aim
             self._pressed_first = pointer
@@ -54,12 +63,12 @@ class TwoPlaces(Gesture):
 
     def move(self, pointer: Pointer) -> None:
         """The preview follows, with the button down or not."""
-        self._point_at(pointer.picture)
+        self._point_at(pointer)
         self._show()
 
     def end(self, pointer: Pointer) -> None:
         """Take the second place, unless this release ends the click for the first."""
-        self._point_at(pointer.picture)
+        self._point_at(pointer)
         pressed, self._pressed_first = self._pressed_first, None
         if pressed is not None and pointer.distance_view_px(pressed) < DRAG_VIEW_PX:
             self._show()
@@ -70,7 +79,11 @@ class TwoPlaces(Gesture):
         """Move the aim by a step on the grid."""
         frame = self._host.frame()
         dx, dy = frame.px_step(*step_mm)
-        self._aim = frame.clamped(self._aim.x_px + dx, self._aim.y_px + dy)
+        step_px = self._aim.step_px
+        if self._axis is not None:
+            step_px = key_refined(step_px, step_mm, self._axis, frame)
+        moved = frame.clamped(self._aim.x_px + dx, self._aim.y_px + dy)
+        self._aim = replace(moved, step_px=step_px)
         self._aimed_by_key = True
         self._show()
 
@@ -104,6 +117,7 @@ class TwoPlaces(Gesture):
         self.is_over = True
         super().cancel()
 
-    def _point_at(self, picture: QPointF) -> None:
-        self._aim = self._host.frame().clamped(picture.x(), picture.y())
+    def _point_at(self, pointer: Pointer) -> None:
+        place = self._host.frame().clamped(pointer.picture.x(), pointer.picture.y())
+        self._aim = replace(place, step_px=pointer.step_px)
         self._aimed_by_key = False
