@@ -82,7 +82,7 @@ def follow_sheet(size_px: tuple[int, int], coarse: GridInk) -> SheetMap | GridNo
         return NOT_FOLLOWED
     waves_per_px = 1.0 / rough.view.px_per_unit
     across_cycles = rough.high - rough.low - 2.0 * _MARGIN_CYCLES
-    scale = scale_of(rough.masked, waves_per_px, rough.off_square, across_cycles)
+    scale = scale_of(rough.masked, waves_per_px, rough.off_square, across_cycles, coarse.bin_px)
     if isinstance(scale, GridNotFound):
         return scale
     per_cycle = 5.0 / np.array(scale.followed_fifths)
@@ -234,7 +234,11 @@ def _is_dots(view: FlatView) -> bool:
     waves = np.stack([along[0], along[1], along[0] + along[1], along[0] - along[1]])
     tiles = Tiles.over((view.plane.shape[0], view.plane.shape[1]), _ROUGH_TILE_PX)
     power = np.abs(lock_in(view.plane, waves, tiles)) ** 2
-    first, second, *both = np.sqrt(np.median(power.reshape(-1, 4), axis=0))
+    flat = np.sqrt(power.reshape(-1, 4))
+    lines = (flat[:, :2] > 0.5 * np.percentile(flat[:, :2], 80.0, axis=0)).all(axis=1)
+    if not lines.any():
+        return True
+    first, second, *both = np.median(flat[lines], axis=0)
     return bool(min(both) > _DOTS * min(first, second))
 
 

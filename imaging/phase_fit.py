@@ -96,7 +96,7 @@ def fit_lines(
     shape = tiles.shape
     corrected = wave + correction[1:]
     start_mm = float(correction[0] - correction[1:] @ middle)
-    start_mm, amplitudes = on_bold_line(state.amplitudes, fifths, start_mm)
+    start_mm, amplitudes = _on_bold_line(state.amplitudes, fifths, start_mm)
     spread = _jackknife(design, residual, weights, shape)
     rounding_mm = sampling_px * float(np.hypot(*corrected))
     sides = np.array([1.0, plane.shape[1], plane.shape[0]])
@@ -155,7 +155,7 @@ def _robust_plane(
     return solution, weights
 
 
-def on_bold_line(
+def _on_bold_line(
     amplitudes: ComplexArray, fifths: NDArray[np.int_], start_mm: float
 ) -> tuple[float, ComplexArray]:
     """Shift the origin onto a bold line: where all waves are dark together."""

@@ -10,7 +10,6 @@ from numpy.typing import NDArray
 
 from imaging.flat_view import FlatView
 from imaging.lock_in import ComplexArray
-from imaging.phase_fit import on_bold_line
 from imaging.sheet_offsets import Lattice, offsets_of
 from imaging.sheet_scale import SheetScale
 from imaging.smooth_surface import smoothest
@@ -25,6 +24,7 @@ _TILE_MM = 10.0
 _STIFFNESS = 0.1
 _ROUNDS = 4
 _SEEN = 0.22
+_NEVER_TURNED = 5
 _IN_STEP = 0.6
 _OFF_SURFACE_MM = 0.12
 _FEWEST_TILES = 20
@@ -121,9 +121,10 @@ def _family(
         return None
     base_mm = np.where(region, found.offsets, 0.0)
     values = found.values * np.exp(-2j * np.pi * base_mm[..., np.newaxis] * fifths / 5.0)
-    shift_mm, amplitudes = on_bold_line(values[region].mean(axis=0), fifths, 0.0)
-    # on_bold_line gives where zero lies from the bold line.
-    values = values * np.exp(2j * np.pi * -shift_mm * fifths / 5.0)
+    mean = values[region].mean(axis=0)
+    line_mm = _bold_line_mm(mean, fifths)
+    to_line = np.exp(2j * np.pi * line_mm * fifths / 5.0)
+    values, amplitudes = values * to_line, mean * to_line
     turned = values * np.exp(-1j * np.angle(amplitudes))
     noise = np.median(np.abs(turned[region].imag), axis=0) / 0.6745
     noise = np.maximum(noise, 1e-6 * np.abs(amplitudes).max())
@@ -144,8 +145,25 @@ def _family(
         if share_wrong > _MOST_MISCOUNTED:
             return None
         seen = seen & ~miscounted
-    offsets_mm = np.where(region, base_mm + extra_mm + shift_mm, np.nan)
+    offsets_mm = np.where(region, base_mm + extra_mm - line_mm, np.nan)
     return _Family(offsets_mm, np.clip(share, 0.05, 1.0) ** 2, seen)
+
+
+def _bold_line_mm(amplitudes: ComplexArray, fifths: IntArray) -> float:
+    """Where a bold line's middle lies: there every wave is at its top, or blurred over, bottom.
+
+    Defocus turns the finer waves round (its transfer is negative beyond its first zero), so
+    the coarse ones choose the line and the fine ones, either way round, only place it.
+    """
+    coarse = fifths <= max(_NEVER_TURNED, int(fifths[0]))
+    trial_mm = np.arange(0.0, 5.0, 0.01)
+    waves = np.exp(2j * np.pi * np.outer(trial_mm, fifths[coarse] / 5.0))
+    line_mm = float(trial_mm[int(np.argmax((waves * amplitudes[coarse]).real.sum(axis=1)))])
+    turned = amplitudes * np.exp(2j * np.pi * line_mm * fifths / 5.0)
+    upright = np.where(turned.real < 0.0, -turned, turned)
+    off_mm = np.angle(upright) * 5.0 / (2.0 * np.pi * fifths)
+    weight = (fifths * np.abs(amplitudes)) ** 2
+    return line_mm - float((weight * off_mm).sum() / weight.sum())
 
 
 def _miscounted(

@@ -10,7 +10,7 @@ from numpy.typing import NDArray
 
 from imaging.choose import NOT_A_MILLIMETRE_GRID
 from imaging.errors import GridNotFound
-from imaging.periods import Fifths, fifths_of
+from imaging.periods import COARSEST_PX_PER_MM, Fifths, fifths_of
 from imaging.profiles import Profiles, profiles_of
 from imaging.ruling import Ruling, ruling_of
 
@@ -51,7 +51,11 @@ class SheetScale:
 
 
 def scale_of(
-    plane: FloatPlane, waves: FloatArray, off_square: float, across_cycles: FloatArray
+    plane: FloatPlane,
+    waves: FloatArray,
+    off_square: float,
+    across_cycles: FloatArray,
+    bin_px: int,
 ) -> SheetScale | GridNotFound:
     """Hold a sheet drawn flat against 1 mm lines with every fifth bold.
 
@@ -65,11 +69,15 @@ def scale_of(
         Length of the level lines' wave over the upright lines' on the picture.
     across_cycles : ndarray of float64, shape (2,)
         Extent of what was followed, in cycles of the waves.
+    bin_px : int
+        Picture pixels on the side of one pixel of the plane.
     """
     profiles = profiles_of(plane, 0.0)
     bold = _with_bold(profiles, waves, off_square)
     return (
-        bold if bold is not None else _with_one_spacing(profiles, waves, off_square, across_cycles)
+        bold
+        if bold is not None
+        else _with_one_spacing(profiles, waves, off_square, across_cycles, bin_px)
     )
 
 
@@ -106,6 +114,7 @@ def _with_one_spacing(
     waves: FloatArray,
     off_square: float,
     across_cycles: FloatArray,
+    bin_px: int,
 ) -> SheetScale | GridNotFound:
     """Plain lines of one spacing both ways: the longest that shows no longer period."""
     both: list[dict[int, Ruling]] = []
@@ -129,7 +138,9 @@ def _with_one_spacing(
         if lines - {1, 5}:
             return NOT_A_MILLIMETRE_GRID
         across = max(across_cycles[0] / i, across_cycles[1] / j)
-        if 5 in lines or across < _FEWEST_SQUARES_OF_1_MM:
+        # Large squares so narrow would have small ones that no picture resolves.
+        narrow = bin_px * min(i / waves[0], j / waves[1]) < 5.0 * COARSEST_PX_PER_MM
+        if 5 in lines or (across < _FEWEST_SQUARES_OF_1_MM and not narrow):
             return SheetScale(
                 (i, j),
                 tuple(range(1, 16)),

@@ -61,7 +61,9 @@ def _bent_pieces(sheet_map: SheetMap, axis: int, *, bold: bool) -> FloatArray:
     line, place = np.meshgrid(numbers, along, indexing="ij")
     points_mm = np.stack([place, line] if axis else [line, place], axis=-1).reshape(-1, 2)
     points_px = sheet_map.to_px(points_mm)
-    seen = sheet_map.covers(points_px).reshape(line.shape)
+    # The last cells reach past the picture's edge.
+    on_picture = np.isfinite(sheet_map.to_mm(points_px)).all(axis=1)
+    seen = (sheet_map.covers(points_px) & on_picture).reshape(line.shape)
     points_px = points_px.reshape(*line.shape, 2)
     both = seen[:, :-1] & seen[:, 1:]
     pieces: FloatArray = np.hstack([points_px[:, :-1][both], points_px[:, 1:][both]])
