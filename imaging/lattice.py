@@ -30,7 +30,7 @@ _SMALL_TILE_MM = 10.0
 _COVERAGE_WAVES = 4
 # Measured on drawn pages (tests/measure_grid.py): what remains where tiles agree too well.
 _SAMPLING_PX = 0.01
-_IN_STEP_PX = 0.04
+_IN_STEP_PX = 0.03
 _WANDER_PX = 3.0
 _TWO_LEVEL_PX = 0.08
 _MOST_STRAY = 0.15
