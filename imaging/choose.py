@@ -30,8 +30,8 @@ _MOST_PAIRS = 60
 _STRONGEST_WAVES = 12
 
 NO_LINES = GridNotFound(
-    "No grid of evenly spaced lines was found; check that the picture shows ECG paper, and "
-    "scan it in colour or grey at 150 dots per inch or more.",
+    "No grid of evenly spaced lines was found; lay the ECG paper flat and upright, and scan it "
+    "in colour or grey at 150 dots per inch or more.",
     "no_lines",
 )
 ONE_DIRECTION = GridNotFound(
