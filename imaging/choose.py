@@ -25,13 +25,13 @@ _FEWEST_LINES = 6.0
 _DOTS_SHARE = 0.45
 _THIN_IN_OTHER = 1.05
 _ALIKE = 2.5
-_FEWEST_SQUARES_OF_1_MM = 55.0
+_FEWEST_SMALL_SQUARES = 80.0
 _MOST_PAIRS = 60
 _STRONGEST_WAVES = 12
 
 NO_LINES = GridNotFound(
-    "No grid of evenly spaced lines was found; check that the picture shows ECG paper, and "
-    "scan it in colour or grey at 150 dots per inch or more.",
+    "No grid of evenly spaced lines was found; lay the ECG paper flat and upright, and scan it "
+    "in colour or grey at 150 dots per inch or more.",
     "no_lines",
 )
 ONE_DIRECTION = GridNotFound(
@@ -185,15 +185,20 @@ def _with_one_spacing(
 def _assumed(
     plane: FloatPlane, bin_px: int, pair: Pair, both: list[Ruling]
 ) -> Choice | GridNotFound:
-    """Take one spacing as 1 mm or 5 mm by how many squares the picture then has."""
+    """Take one spacing as 1 mm or 5 mm by what picture that would make.
+
+    Large squares are at least 15 px, or the small ones could not be told; a sheet has at
+    most 60 of them along its side, but more than 80 small ones.
+    """
     lines = {rule.lines_per_cycle for rule in both}
     if lines - {1, 5}:
         return NOT_A_MILLIMETRE_GRID
     across = max(plane.shape) * max(pair.lengths)
+    pitch_px = bin_px / max(pair.lengths)
     if 5 in lines:
         scale, fifths, first = 5.0, tuple(range(1, 16)), 5
         taken = "The bold lines are not clear; the closest lines are taken as 1 mm apart."
-    elif across < _FEWEST_SQUARES_OF_1_MM:
+    elif across < _FEWEST_SMALL_SQUARES and pitch_px >= 5.0 * COARSEST_PX_PER_MM:
         scale, fifths, first = 5.0, tuple(range(1, 16)), 1
         taken = "Only one line spacing is clear; it is taken as 5 mm, the large squares."
     else:

@@ -31,6 +31,8 @@ _SMALL_TILE_MM = 10.0
 _COVERAGE_WAVES = 4
 # Measured on drawn pages (tests/measure_grid.py): what remains where tiles agree too well.
 _SAMPLING_PX = 0.01
+_IN_STEP_PX = 0.03
+_WANDER_PX = 3.0
 _TWO_LEVEL_PX = 0.08
 _MOST_STRAY = 0.15
 _ASIDE = 0.33
@@ -87,9 +89,8 @@ def _flat_map(picture: Picture, ink: GridInk, coarse: GridInk) -> SheetMap | Gri
     choice = choose_waves(coarse.darkness, coarse.bin_px)
     if isinstance(choice, GridNotFound):
         return choice
-    rounding_px = _TWO_LEVEL_PX if is_two_level(picture.pixels) else _SAMPLING_PX
     times = coarse.bin_px // ink.bin_px
-    fits = _fit_both(ink, choice, times, rounding_px / ink.bin_px)
+    fits = _fit_both(ink, choice, times, two_level=is_two_level(picture.pixels))
     if isinstance(fits, GridNotFound):
         return fits
     return _sheet_map(picture.size_px, ink.bin_px, coarse, fits, choice)
@@ -114,7 +115,17 @@ class _Fits:
     scatter_mm: float
 
 
-def _fit_both(ink: GridInk, choice: Choice, times: int, sampling_px: float) -> _Fits | GridNotFound:
+def _rounding_px(wave: FloatArray, shape: tuple[int, int], two_level: bool) -> float:
+    """One sigma of what the pixels' rounding may move a family of lines over the plane."""
+    if two_level:
+        return _TWO_LEVEL_PX
+    # How many pixels a line wanders sideways along its length: lines that stay in one row of
+    # pixels are all rounded alike, others are rounded every way.
+    aside, along = sorted(np.abs(wave))
+    return _SAMPLING_PX if aside / along * min(shape) > _WANDER_PX else _IN_STEP_PX
+
+
+def _fit_both(ink: GridInk, choice: Choice, times: int, *, two_level: bool) -> _Fits | GridNotFound:
     waves = [np.array(wave) / times for wave in (choice.upright, choice.level)]
     px_per_mm = 1.0 / max(np.hypot(*wave) for wave in waves)
     smallest_mm = min(ink.darkness.shape) / px_per_mm
@@ -124,8 +135,17 @@ def _fit_both(ink: GridInk, choice: Choice, times: int, sampling_px: float) -> _
     tiles = Tiles.over(ink.darkness.shape, round(tile_mm * px_per_mm))
     highest = 5.0 * HIGHEST_CYCLES_PER_PX * px_per_mm
     fifths = np.array([number for number in choice.fifths if number <= highest])
+    shape = (ink.darkness.shape[0], ink.darkness.shape[1])
     fits = [
-        fit_lines(ink.darkness, wave, fifths, choice.first, tiles, sampling_px) for wave in waves
+        fit_lines(
+            ink.darkness,
+            wave,
+            fifths,
+            choice.first,
+            tiles,
+            _rounding_px(wave, shape, two_level) / ink.bin_px,
+        )
+        for wave in waves
     ]
     bar_mm = _BAR_MM if px_per_mm * ink.bin_px >= _COARSE_PX_PER_MM else _COARSE_BAR_MM
     bends = [bend_of(fit.offsets_mm, tile_mm / 2.0) for fit in fits]

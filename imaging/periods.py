@@ -67,8 +67,6 @@ class Fifths:
         How well the waves between agree on one line of five, 0 to 1.
     bold_clear : float
         Strength of the bold lines in standard errors.
-    bold_line : int
-        Which of five thin lines, counted from the one nearest the profile's start, is bold.
     longer : float
         Share of waves that only a longer period than five squares explains.
     share : float
@@ -81,7 +79,6 @@ class Fifths:
     thin_over_bold: float
     in_step: float
     bold_clear: float
-    bold_line: int
     longer: float
     share: float
     faintest_thin: float
@@ -151,7 +148,7 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
     found = profiles.amplitudes(wave, np.concatenate([tenths, _FIFTEENTHS, *_PRIME_PARTS]))
     one = int(_TENTHS) - 1
     if most <= one:
-        return Fifths(False, 1.0, 0.0, 0.0, 0, 1.0, 0.0, 0.0)
+        return Fifths(False, 1.0, 0.0, 0.0, 1.0, 0.0, 0.0)
     square, error = abs(found.values[one]), float(found.errors[one])
     seen = bool(square > _CLEAR * error and found.coherence[one] > 0.5)
     # Counted from the line nearest the start, so that thin lines stand at whole numbers.
@@ -172,7 +169,6 @@ def fifths_of(profiles: Profiles, wave: float) -> Fifths:
         _thin_over_bold(np.abs(values), errors, number),
         in_step,
         clear,
-        line,
         _longer(found, number, most),
         2.0 * float((np.abs(found.values[1:most:2]) ** 2).sum()) / profiles.variance,
         _faintest_thin(values * np.exp(2j * np.pi * tenths * line), number),

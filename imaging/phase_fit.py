@@ -8,7 +8,7 @@ the u of all tiles corrects the map.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -83,7 +83,29 @@ def fit_lines(
     places = tiles.centres_px().reshape(-1, 2)
     middle = places.mean(axis=0)
     design = np.column_stack([np.ones(len(places)), places - middle])
-    values = found.reshape(len(places), -1)
+    correction, state, weights = _settle(found.reshape(len(places), -1), design, fifths, first)
+    residual = state.offsets_mm
+    corrected = wave + correction[1:]
+    start_mm = float(correction[0] - correction[1:] @ middle)
+    start_mm, amplitudes = _on_bold_line(state.amplitudes, fifths, start_mm)
+    spread = _jackknife(design, residual, weights, tiles.shape)
+    rounding_mm = sampling_px * float(np.hypot(*corrected))
+    sides = np.array([1.0, plane.shape[1], plane.shape[0]])
+    covariance = _to_corner(spread + np.diag((rounding_mm / sides) ** 2), middle)
+    lines = state.strength > 0.0
+    on_map = np.abs(residual) < _ON_MAP_MM
+    stray = float(1.0 - on_map[lines].mean()) if lines.any() else 1.0
+    seen = np.where((state.strength > _INNER) & on_map, residual, np.nan)
+    return LineFit(corrected, start_mm, covariance, seen.reshape(tiles.shape), amplitudes, stray)
+
+
+def _settle(
+    values: ComplexArray, design: FloatArray, fifths: NDArray[np.int_], first: int
+) -> tuple[FloatArray, _State, FloatArray]:
+    """Correct the plane until it stays; what is left of the offsets, and the tiles' weights.
+
+    The first passes use the slower waves only, whose turns cannot be a whole one off.
+    """
     correction = np.zeros(3)
     for number in range(_PASSES):
         shift_mm = design @ correction
@@ -92,20 +114,8 @@ def fit_lines(
         state = _offsets(turned, fifths, used, int(np.flatnonzero(fifths == first)[0]))
         step, weights = _robust_plane(design, state.offsets_mm, state.strength)
         correction = correction + step
-    residual = state.offsets_mm - design @ step
-    shape = tiles.shape
-    corrected = wave + correction[1:]
-    start_mm = float(correction[0] - correction[1:] @ middle)
-    start_mm, amplitudes = _on_bold_line(state.amplitudes, fifths, start_mm)
-    spread = _jackknife(design, residual, weights, shape)
-    rounding_mm = sampling_px * float(np.hypot(*corrected))
-    sides = np.array([1.0, plane.shape[1], plane.shape[0]])
-    covariance = _to_corner(spread + np.diag((rounding_mm / sides) ** 2), middle)
-    lines = state.strength > 0.0
-    on_map = np.abs(residual) < _ON_MAP_MM
-    stray = float(1.0 - on_map[lines].mean()) if lines.any() else 1.0
-    seen = np.where((state.strength > _INNER) & on_map, residual, np.nan)
-    return LineFit(corrected, start_mm, covariance, seen.reshape(shape), amplitudes, stray)
+    left_mm = state.offsets_mm - design @ step
+    return correction, replace(state, offsets_mm=left_mm), weights
 
 
 @dataclass(frozen=True, slots=True, eq=False)

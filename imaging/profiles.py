@@ -50,14 +50,13 @@ class Profiles:
         turned = in_step * np.exp(-1j * np.angle(mean))
         error = np.sqrt((turned.imag**2).mean(axis=0) / len(found))
         level = np.abs(in_step).mean(axis=0)
-        return Amplitudes(multiples, mean, error, np.abs(mean) / np.maximum(level, 1e-30))
+        return Amplitudes(mean, error, np.abs(mean) / np.maximum(level, 1e-30))
 
 
 @dataclass(frozen=True, slots=True, eq=False)
 class Amplitudes:
     """Complex amplitude at each multiple, its standard error, and how far the bands agree."""
 
-    multiples: FloatArray
     values: ComplexArray
     errors: FloatArray
     coherence: FloatArray

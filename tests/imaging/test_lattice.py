@@ -12,6 +12,7 @@ import pytest
 from numpy.typing import NDArray
 
 from imaging import GridNotFound, SheetMap, find_grid, open_picture
+from sample_scans.layout import Layout
 from sample_scans.page import GRID_COLOURS, RenderedPage
 from tests.measure_grid import (
     as_picture,
@@ -81,6 +82,23 @@ def test_thin_lines_alone_are_no_certain_scale() -> None:
     assert not found.scale_is_certain
     assert "taken as 1 mm" in found.evidence[0]
     assert found.x_pitch_px_per_mm == pytest.approx(200.0 / 25.4, rel=1e-3)
+
+
+@pytest.mark.parametrize("row_gap_mm", [25.0, 50.0])
+def test_rows_of_traces_are_not_taken_for_bold_lines(row_gap_mm: float) -> None:
+    """Bold lines alone, and traces at every fifth or tenth of them: that is still 5 mm paper."""
+    layout = Layout(row_gap_mm=row_gap_mm, grid_mm=(0.0, 0.0, 180.0, 175.0), row_s=6.5)
+    page = flat_page(layout=layout, dpi=150.0, thin="absent", mode="one_bit", skew_deg=0.5)
+    score = score_page(page)
+    assert not score.certain
+    assert not score.wrong_factor
+
+
+def test_a_bold_only_page_with_rows_25_mm_apart_keeps_its_factor() -> None:
+    """Found wrong and certain once: its rows passed for bold lines of five times the size."""
+    score = score_page(random_flat_page(147))
+    assert not score.certain
+    assert not score.wrong_factor
 
 
 def test_dots_are_not_taken_for_small_squares() -> None:
@@ -184,8 +202,6 @@ def test_the_grid_covers_what_lies_beneath_the_trace_and_not_the_margin() -> Non
 
 def test_a_large_picture_is_binned_and_loses_nothing() -> None:
     """600 dots per inch on a sheet larger than the working plane."""
-    from sample_scans.layout import Layout
-
     page = flat_page(layout=Layout(paper_mm=(240.0, 130.0)), dpi=600.0, skew_deg=0.3)
     score = score_page(page)
     assert score.certain
