@@ -76,20 +76,17 @@ def measure_dense(
         both.append(family)
     seen = both[0].seen & both[1].seen
     surfaces, errors, good = [], [], seen
+    stiffness = _STIFFNESS * (16.0 if fine else 1.0)
     for family in both:
         known = seen & np.isfinite(family.offsets_mm)
         offsets = np.where(known, family.offsets_mm, 0.0)
-        surface, kept = smoothest(
-            offsets, known * family.weight, _STIFFNESS * (16.0 if fine else 1.0), _ROUNDS
-        )
+        surface, kept = smoothest(offsets, known * family.weight, stiffness, _ROUNDS)
         residual = np.abs(offsets - surface)
         good = good & (~known | (residual < _OFF_SURFACE_MM))
         errors.append(_errors(residual, kept, known))
         surfaces.append(surface)
-    covered = _largest(good)
-    if not scale.certain:
-        # Without bold lines a count lost at the edge would go unseen: a little less is covered.
-        covered = cv2.erode(covered.astype(np.uint8), np.ones((3, 3), dtype=np.uint8)) > 0
+    # Without bold lines a count lost at the edge would go unseen: a little less is covered.
+    covered = _largest(good) if scale.certain else _eroded(_largest(good))
     if int(covered.sum()) < _FEWEST_TILES:
         return None
     away = cv2.distanceTransform((~covered).astype(np.uint8), cv2.DIST_L2, 5)
@@ -129,13 +126,8 @@ def _family(
     to_line = np.exp(2j * np.pi * line_mm * fifths / 5.0)
     values, amplitudes = values * to_line, mean * to_line
     turned = values * np.exp(-1j * np.angle(amplitudes))
-    noise = np.median(np.abs(turned[region].imag), axis=0) / 0.6745
-    noise = np.maximum(noise, 1e-6 * np.abs(amplitudes).max())
-    weight = (fifths * np.abs(amplitudes) / noise) ** 2
-    weight[np.abs(amplitudes) < 2.0 * noise] = 0.0
-    weight[first] = max(weight[first], 1e-12)
-    turns_mm = np.angle(turned) * 5.0 / (2.0 * np.pi * fifths)
-    extra_mm = turns_mm @ (weight / weight.sum())
+    weight = _weights(turned[region], amplitudes, fifths, first)
+    extra_mm = (np.angle(turned) * 5.0 / (2.0 * np.pi * fifths)) @ weight
     power = float((np.abs(amplitudes) ** 2).sum())
     real = (turned * np.abs(amplitudes)).real.sum(axis=2)
     share = real / power
@@ -150,6 +142,18 @@ def _family(
         seen = seen & ~miscounted
     offsets_mm = np.where(region, base_mm + extra_mm - line_mm, np.nan)
     return _Family(offsets_mm, np.clip(share, 0.05, 1.0) ** 2, seen)
+
+
+def _weights(
+    turned: ComplexArray, amplitudes: ComplexArray, fifths: IntArray, first: int
+) -> FloatArray:
+    """How much each wave tells of a place, summing to one; waves lost in noise tell nothing."""
+    noise = np.median(np.abs(turned.imag), axis=0) / 0.6745
+    noise = np.maximum(noise, 1e-6 * np.abs(amplitudes).max())
+    weight = (fifths * np.abs(amplitudes) / noise) ** 2
+    weight[np.abs(amplitudes) < 2.0 * noise] = 0.0
+    weight[first] = max(weight[first], 1e-12)
+    return np.asarray(weight / weight.sum())
 
 
 def _bold_line_mm(amplitudes: ComplexArray, fifths: IntArray) -> float:
@@ -201,6 +205,12 @@ def _errors(residual: FloatArray, kept: FloatArray, known: BoolArray) -> FloatAr
     # A few tiles alone tell little: mixed with what the whole sheet has.
     variance = (squares + 0.05 * typical) / (total + 0.05)
     return np.hypot(_ERROR_SHARE * np.sqrt(variance), _LEAST_ERROR_MM)
+
+
+def _eroded(cells: BoolArray) -> BoolArray:
+    import cv2
+
+    return np.asarray(cv2.erode(cells.astype(np.uint8), np.ones((3, 3), dtype=np.uint8)) > 0)
 
 
 def _largest(good: BoolArray) -> BoolArray:

@@ -25,6 +25,9 @@ _MOST_OFF_SQUARE = 0.3
 # A3 paper has 84 large squares along its longer side, a short strip 100 small ones.
 _FEWEST_SQUARES_OF_1_MM = 85.0
 
+TAKEN_AS_5_MM = "Only one line spacing is clear; it is taken as 5 mm, the large squares."
+TAKEN_AS_1_MM = "Only one line spacing is clear; it is taken as 1 mm, the small squares."
+
 
 @dataclass(frozen=True, slots=True)
 class SheetScale:
@@ -133,26 +136,15 @@ def _with_one_spacing(
         for j in sorted(both[1], reverse=True)
         if abs(np.log(off_square * i / j)) < _MOST_OFF_SQUARE
     ]
-    for i, j in pairs:
-        lines = {both[0][i].lines_per_cycle, both[1][j].lines_per_cycle}
-        if lines - {1, 5}:
-            return NOT_A_MILLIMETRE_GRID
-        across = max(across_cycles[0] / i, across_cycles[1] / j)
-        # Large squares so narrow would have small ones that no picture resolves.
-        narrow = bin_px * min(i / waves[0], j / waves[1]) < 5.0 * COARSEST_PX_PER_MM
-        if 5 in lines or (across < _FEWEST_SQUARES_OF_1_MM and not narrow):
-            return SheetScale(
-                (i, j),
-                tuple(range(1, 16)),
-                (i, j),
-                False,
-                ("Only one line spacing is clear; it is taken as 5 mm, the large squares.",),
-            )
-        return SheetScale(
-            (5 * i, 5 * j),
-            (5, 10, 15),
-            (5, 5),
-            False,
-            ("Only one line spacing is clear; it is taken as 1 mm, the small squares.",),
-        )
-    return NOT_A_MILLIMETRE_GRID
+    if not pairs:
+        return NOT_A_MILLIMETRE_GRID
+    i, j = pairs[0]
+    lines = {both[0][i].lines_per_cycle, both[1][j].lines_per_cycle}
+    if lines - {1, 5}:
+        return NOT_A_MILLIMETRE_GRID
+    across = max(across_cycles[0] / i, across_cycles[1] / j)
+    # Large squares so narrow would have small ones that no picture resolves.
+    narrow = bin_px * min(i / waves[0], j / waves[1]) < 5.0 * COARSEST_PX_PER_MM
+    if 5 in lines or (across < _FEWEST_SQUARES_OF_1_MM and not narrow):
+        return SheetScale((i, j), tuple(range(1, 16)), (i, j), False, (TAKEN_AS_5_MM,))
+    return SheetScale((5 * i, 5 * j), (5, 10, 15), (5, 5), False, (TAKEN_AS_1_MM,))

@@ -42,16 +42,12 @@ def unwrapped(
         total = float(quality[inside].sum())
         if total > best_sum:
             best, best_sum = grown, total
-        if float(quality[free].sum()) <= best_sum and not _could_be_larger(quality, free, best_sum):
-            break
+        if float(quality[free].sum()) <= best_sum:
+            break  # what is left could not be larger
     region = np.isfinite(best)
     if region.any():
         best = best - np.round(float(np.median(best[region])))
     return best, region
-
-
-def _could_be_larger(quality: FloatArray, free: BoolArray, best_sum: float) -> bool:
-    return float(quality[free].sum()) > best_sum
 
 
 def _grown(
