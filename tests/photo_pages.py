@@ -100,9 +100,9 @@ def plain_sheet(pixels: NDArray[np.uint8], px_per_mm: float) -> Sheet:
     return Sheet(pixels, px_per_mm, np.eye(2, 3), (0.0, 0.0, 0.0, 0.0))
 
 
-def random_printed_page(rng: np.random.Generator) -> PrintedPage:
-    """A page of random layout, print and recording."""
-    signal, seconds, name = _random_signal(rng)
+def random_printed_page(rng: np.random.Generator, *, recordings: bool = True) -> PrintedPage:
+    """A page of random layout, print and recording; an invented one if none is to be used."""
+    signal, seconds, name = _random_signal(rng, recording_names() if recordings else ())
     layout = random_layout(rng, tuple(signal.leads_mv), seconds)
     scale = float(rng.choice([1.0, 1.0, 0.94, 0.97, rng.uniform(0.88, 1.08)]))
     return PrintedPage(
@@ -116,9 +116,8 @@ def random_printed_page(rng: np.random.Generator) -> PrintedPage:
     )
 
 
-def _random_signal(rng: np.random.Generator) -> tuple[Signal, float, str]:
+def _random_signal(rng: np.random.Generator, names: tuple[str, ...]) -> tuple[Signal, float, str]:
     """A recording, its length in seconds and its name; invented where there are no real ones."""
-    names = recording_names()
     if not names or rng.random() < 0.2:
         return invented_signal(), 10.0, "invented"
     recording = real_recording(str(rng.choice(names)))
@@ -249,7 +248,7 @@ def random_finish(rng: np.random.Generator) -> Finish:
 
 def strip_page(rng: np.random.Generator) -> PrintedPage:
     """A strip from a roll, to lie beside another page."""
-    signal, seconds, name = _random_signal(rng)
+    signal, seconds, name = _random_signal(rng, ())
     words = {"title": "", "legend": "25 mm/s", "pulse": "full"}
     speed = {"speed_mm_per_s": 25.0}
     leads = tuple(signal.leads_mv)[:1]

@@ -25,8 +25,8 @@ FloatArray = NDArray[np.float64]
 Pixels = NDArray[np.uint8]
 
 QUICK_SEEDS = (
-    *(9000, 9001, 9002, 9003, 9006, 9007, 9008, 9009, 9010, 9011),
-    *(9012, 9013, 9014, 9017, 9018, 9019, 9021, 9022, 9023, 9024),
+    *(9001, 9006, 9007, 9008, 9009, 9010, 9011, 9012, 9013, 9014),
+    *(9016, 9017, 9018, 9019, 9020, 9021, 9022, 9023, 9025, 9026),
 )
 """Seeds whose page has 3 px or more for a mm everywhere at 2 to 3 megapixels."""
 
@@ -153,6 +153,7 @@ def photo(
     megapixels: float | None = None,
     plain: bool = False,
     printed: PrintedPage | None = None,
+    recordings: bool = True,
     **options: Any,
 ) -> Photo:
     """A photograph of a page, always the same for the same arguments.
@@ -167,6 +168,8 @@ def photo(
         Only what `options` ask for, seen from above.
     printed : PrintedPage, optional
         The page; by chance if not given.
+    recordings : bool
+        Whether a page by chance may show a real recording, where there are some.
     **options
         Fields of `Recipe`.
     """
@@ -177,7 +180,7 @@ def photo(
     recipe = replace(recipe, **options)
     if printed is None:
         page_rng = np.random.default_rng([seed, 0])
-        printed = random_printed_page(page_rng)
+        printed = random_printed_page(page_rng, recordings=recordings)
         if recipe.copy_of in ("photocopy", "fax"):
             printed = strongly_ruled(printed, page_rng)
     shot = take(subject_of(printed), recipe, seed)
@@ -222,9 +225,9 @@ def turn_of_picture(shape: tuple[int, ...], quarter_turns: int, *, mirrored: boo
 
 
 def quick_set() -> Iterator[Photo]:
-    """Twenty photos of 2 to 3 megapixels, one at a time."""
+    """Twenty photos of 2 to 3 megapixels, one at a time; the same on every machine."""
     for number, seed in enumerate(QUICK_SEEDS):
-        yield photo(seed, megapixels=2.0 + number / 19.0)
+        yield photo(seed, megapixels=2.0 + number / 19.0, recordings=False)
 
 
 def slow_set() -> Iterator[Photo]:

@@ -10,6 +10,7 @@ from pathlib import Path
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 
 import pytest
+from PySide6.QtGui import QGuiApplication
 from pytestqt.qtbot import QtBot
 
 from app.window import opening
@@ -55,6 +56,8 @@ def window(
         window.show()
     yield window
     window.jobs.wait_for_all()
+    # What a test put there must not outlive the interpreter: Qt would delete it too late.
+    QGuiApplication.clipboard().clear()
 
 
 @pytest.fixture
