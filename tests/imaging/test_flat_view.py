@@ -22,7 +22,7 @@ def test_pixels_show_their_places() -> None:
     expected = across + 10.0 * down
     # Ten units a mm: the drawing is true to a hundredth of a millimetre (cv2 counts in 1/32 px).
     assert np.abs(view.plane - expected).max() < 0.12
-    assert np.abs(view.plane - expected).mean() < 0.04
+    assert np.abs(view.plane - expected).mean() < 0.06
 
 
 def test_too_much_is_not_drawn() -> None:
