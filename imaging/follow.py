@@ -39,6 +39,8 @@ _ROUNDS = 8
 _PASSES = (False, False, True)
 _FASTEST_TURN_DEG_PER_MM = 0.3
 _BESIDE_TURN_MM = 4.0
+_MOST_STRAIN = 0.05
+_AROUND_MM = 20.0
 _DOTS = 0.5
 _LEAST_BEND_MM = 0.4
 _NODE_MM = 4.0
@@ -319,12 +321,17 @@ def _coverage(size_px: tuple[int, int], bend: Bend, view: FlatView, dense: Dense
     cells &= np.isfinite(bend.errors_mm(centres_px))
     slopes = bend.mm_per_px(centres_px)
     # Where one sheet ends on another, the joined map turns at once; a fold or curl does not.
+    # At the rim of what was followed a correction may run away: there the squares are all at
+    # once of another size than those around.
     turn = np.unwrap(
         np.arctan2(slopes[:, 1, 0] - slopes[:, 0, 1], slopes[:, 0, 0] + slopes[:, 1, 1])
     ).reshape(shape)
     mm_per_px = np.sqrt(np.abs(np.linalg.det(slopes))).reshape(shape)
     speed = np.hypot(*np.gradient(turn, cell_px)) / np.maximum(mm_per_px, 1e-9)
-    jumps = (np.rad2deg(speed) > _FASTEST_TURN_DEG_PER_MM) & cells.reshape(shape)
+    window = 1 + 2 * max(1, round(0.5 * _AROUND_MM * float(np.median(1.0 / mm_per_px)) / cell_px))
+    strain = strain_of(slopes.reshape(*shape, 2, 2), cells.reshape(shape), window)
+    jumps = (np.rad2deg(speed) > _FASTEST_TURN_DEG_PER_MM) | (strain > _MOST_STRAIN)
+    jumps &= cells.reshape(shape)
     reach = 1 + 2 * max(1, round(_BESIDE_TURN_MM * float(np.median(1.0 / mm_per_px)) / cell_px))
     near = cv2.dilate(jumps.astype(np.uint8), np.ones((reach, reach), dtype=np.uint8))
     kept = (cells.reshape(shape) & (near == 0)).astype(np.uint8)
@@ -333,3 +340,20 @@ def _coverage(size_px: tuple[int, int], bend: Bend, view: FlatView, dense: Dense
         return Coverage.from_cells(np.zeros(shape, dtype=bool), cell_px)
     largest = 1 + int(np.argmax(stats[1:, cv2.CC_STAT_AREA]))
     return Coverage.from_cells(labels == largest, cell_px)
+
+
+def strain_of(slopes: FloatArray, cells: BoolArray, window: int) -> FloatArray:
+    """How far each cell's squares differ in size or shape from those covered around it.
+
+    `slopes` are sheet_mm per picture_px, shape (rows, columns, 2, 2); the result has shape
+    (rows, columns) and no unit.
+    """
+    import cv2
+
+    mask = cells.astype(np.float64)
+    seen = np.maximum(cv2.blur(mask, (window, window)), 1e-9)
+    parts = (slopes * mask[:, :, np.newaxis, np.newaxis]).reshape(*cells.shape, 4)
+    around = (cv2.blur(parts, (window, window)) / seen[:, :, np.newaxis]).reshape(slopes.shape)
+    around[~cells | (np.abs(np.linalg.det(around)) < 1e-12)] = np.eye(2)
+    change = slopes @ np.linalg.inv(around) - np.eye(2)
+    return np.where(cells, np.abs(change).max(axis=(2, 3)), 0.0)

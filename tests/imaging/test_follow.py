@@ -7,6 +7,7 @@ import pytest
 from numpy.typing import NDArray
 
 from imaging import GridNotFound, SheetMap, find_grid
+from imaging.follow import strain_of
 from tests.measure_grid import as_picture
 from tests.no_grid import no_grid_pictures
 from tests.photos import Photo, photo, quick_set
@@ -59,18 +60,26 @@ def _hold(taken: Photo) -> None:
 
 
 def test_a_tilted_sheet_is_followed() -> None:
-    taken = photo(7, plain=True, megapixels=2.5, tilt_deg=24.0, tilt_towards_deg=70.0, noise=2.0)
+    taken = photo(
+        7,
+        plain=True,
+        megapixels=2.5,
+        recordings=False,
+        tilt_deg=24.0,
+        tilt_towards_deg=70.0,
+        noise=2.0,
+    )
     _hold(taken)
 
 
 def test_a_photo_with_everything_is_followed() -> None:
-    taken = photo(9022, megapixels=2.9)
+    taken = photo(9022, megapixels=2.9, recordings=False)
     assert len(taken.sheets) == 2  # a strip beside it must not pull the map along
     _hold(taken)
 
 
 def test_a_turned_photo_keeps_the_pictures_own_right() -> None:
-    taken = photo(9007, megapixels=2.3)
+    taken = photo(9007, megapixels=2.3, recordings=False)
     assert taken.recipe.quarter_turns == 1
     found = find_grid(as_picture(taken.pixels))
     assert isinstance(found, SheetMap)
@@ -84,6 +93,21 @@ def test_a_turned_photo_keeps_the_pictures_own_right() -> None:
 def test_a_scene_without_a_grid_is_refused(name: str) -> None:
     pixels = dict(no_grid_pictures())[name]
     assert isinstance(find_grid(as_picture(pixels)), GridNotFound)
+
+
+def test_squares_of_another_size_than_those_around_are_noticed() -> None:
+    """Where a correction runs away at the rim the squares change size all at once."""
+    slopes = np.tile(0.15 * np.array([[1.0, 0.1], [-0.1, 1.0]]), (30, 40, 1, 1))
+    slopes *= np.linspace(1.0, 1.1, 40)[np.newaxis, :, np.newaxis, np.newaxis]  # perspective
+    slopes[-2:, 10:14] *= 1.25
+    cells = np.ones((30, 40), dtype=bool)
+    cells[:, :3] = False
+    strain = strain_of(slopes, cells, 9)
+    assert (strain[-2:, 10:14] > 0.1).all()
+    elsewhere = strain.copy()
+    elsewhere[-8:, 4:20] = 0.0
+    assert elsewhere.max() < 0.03
+    assert (strain[~cells] == 0.0).all()
 
 
 @pytest.mark.slow
