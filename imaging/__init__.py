@@ -10,7 +10,7 @@ from imaging.sheet_map import Coverage, SheetMap, sheet_map_from_box
 
 
 def find_grid(picture: Picture) -> SheetMap | GridNotFound:
-    """Find the millimetre lattice on a flat picture; see `imaging.lattice.find_grid`."""
+    """Find the millimetre lattice on a scan or photograph; see `imaging.lattice.find_grid`."""
     # Loaded when first asked for: a picture is on the screen before that.
     from imaging.lattice import find_grid as find
 

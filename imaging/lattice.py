@@ -1,4 +1,4 @@
-"""Find the millimetre lattice on a flat picture."""
+"""Find the millimetre lattice: flat where the page is flat, else followed over the sheet."""
 
 from __future__ import annotations
 
@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 from imaging.choose import TOO_SMALL, Choice, choose_waves
 from imaging.errors import GridNotFound
 from imaging.flatness import bend_of
+from imaging.follow import follow_sheet
 from imaging.ink import GridInk, grid_ink, is_two_level
 from imaging.lock_in import Tiles
 from imaging.periods import HIGHEST_CYCLES_PER_PX
@@ -50,7 +51,9 @@ NOT_FLAT = GridNotFound(
 
 
 def find_grid(picture: Picture) -> SheetMap | GridNotFound:
-    """Find the millimetre grid of a flat scan.
+    """Find the millimetre grid of a scan or a photograph.
+
+    A flat page gets one origin and two steps; one that no such map fits is followed.
 
     Parameters
     ----------
@@ -73,9 +76,20 @@ def find_grid(picture: Picture) -> SheetMap | GridNotFound:
     ink = grid_ink(picture.pixels)
     times = int(np.ceil(np.sqrt(ink.darkness.size / _SPECTRUM_PIXELS)))
     coarse = ink.binned(times)
+    flat = _flat_map(picture, ink, coarse)
+    if isinstance(flat, SheetMap):
+        return flat
+    followed = follow_sheet(picture.size_px, coarse)
+    if isinstance(followed, SheetMap):
+        return followed
+    return NOT_FLAT if flat is not NOT_FLAT and _grid_in_the_middle(coarse) else flat
+
+
+def _flat_map(picture: Picture, ink: GridInk, coarse: GridInk) -> SheetMap | GridNotFound:
     choice = choose_waves(coarse.darkness, coarse.bin_px)
     if isinstance(choice, GridNotFound):
-        return NOT_FLAT if _grid_in_the_middle(coarse) else choice
+        return choice
+    times = coarse.bin_px // ink.bin_px
     fits = _fit_both(ink, choice, times, two_level=is_two_level(picture.pixels))
     if isinstance(fits, GridNotFound):
         return fits

@@ -1,7 +1,9 @@
 """From picture pixels to millimetres of grid and back, with the standard error of both.
 
 A flat sheet is an affine picture of its grid: one origin and two steps, each a vector in
-picture_px, so that x and y pitch, turn and skew are all free.
+picture_px, so that x and y pitch, turn and skew are all free. A sheet that is tilted or bent
+has a `Bend` besides, which then says where each point lies; origin and steps are the flat
+map nearest to it.
 """
 
 from __future__ import annotations
@@ -12,6 +14,8 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
+
+from imaging.bend import Bend
 
 Vector = tuple[float, float]
 FloatArray = NDArray[np.float64]
@@ -88,6 +92,9 @@ class SheetMap:
         Clockwise turn (0, 90, 180, 270) from the picture's own right to the reading direction.
     mirrored : bool
         Whether the picture had to be mirrored.
+    bend : Bend, optional
+        Where the grid runs on a sheet that does not lie flat before the camera; its errors
+        then replace the covariance's.
     extra : mapping
         Fields of a later software version, kept for the round trip through a file.
     """
@@ -104,6 +111,7 @@ class SheetMap:
     evidence: tuple[str, ...] = ()
     turn_deg: int = 0
     mirrored: bool = False
+    bend: Bend | None = None
     extra: Mapping[str, Any] = field(default_factory=dict)
 
     def __post_init__(self) -> None:
@@ -132,14 +140,31 @@ class SheetMap:
         points_px = _as_points(points_px)
         width_px, height_px = self.picture_size_px
         inside = (points_px >= -0.5) & (points_px <= (width_px - 0.5, height_px - 0.5))
-        mm = (points_px - self.origin_px) @ np.linalg.inv(self._px_from_mm()).T
+        if self.bend is None:
+            mm = (points_px - self.origin_px) @ np.linalg.inv(self._px_from_mm()).T
+        else:
+            mm = self.bend.to_mm(points_px)
         mm[~inside.all(axis=1)] = np.nan
         return mm
 
     def to_px(self, points_mm: FloatArray) -> FloatArray:
-        """Sheet points to picture points, both shape (N, 2); not limited to the picture."""
-        points_px: FloatArray = _as_points(points_mm) @ self._px_from_mm().T + self.origin_px
-        return points_px
+        """Sheet points to picture points, both shape (N, 2); not limited to the picture.
+
+        On a bent sheet NaN where no point of the picture's plane shows the place.
+        """
+        points_mm = _as_points(points_mm)
+        points_px: FloatArray = points_mm @ self._px_from_mm().T + self.origin_px
+        return points_px if self.bend is None else self.bend.to_px(points_mm, points_px)
+
+    def steps_px_at(self, point_px: Vector) -> tuple[Vector, Vector]:
+        """The picture_px vectors of one small square along and down the paper at a point."""
+        if self.bend is None:
+            return self.x_step_px, self.y_step_px
+        slopes = self.bend.mm_per_px(np.array([point_px], dtype=np.float64))[0]
+        if abs(np.linalg.det(slopes)) < 1e-9:
+            return self.x_step_px, self.y_step_px
+        (xx, yx), (xy, yy) = np.linalg.inv(slopes)
+        return (float(xx), float(xy)), (float(yx), float(yy))
 
     def covers(self, points_px: FloatArray) -> BoolArray:
         """Whether the grid was really seen at each point, shape (N, 2) -> (N,)."""
@@ -149,8 +174,10 @@ class SheetMap:
         """One sigma of a point's place on the grid (both axes together), (N, 2) -> (N,).
 
         The first-order propagation of the parameters' covariance (JCGM 100:2008, 5.2.2),
-        with the grid's own scatter added.
+        with the grid's own scatter added. On a bent sheet NaN where the grid was not followed.
         """
+        if self.bend is not None:
+            return np.asarray(np.sqrt(2.0) * self._bend_errors_mm(self.bend, points_px))
         mm = self.to_mm(points_px)
         weights = np.column_stack([np.ones(len(mm)), mm])
         per_axis = self._axis_errors_mm(weights)
@@ -168,11 +195,22 @@ class SheetMap:
     def span_standard_error_mm(self, start_px: FloatArray, end_px: FloatArray) -> FloatArray:
         """One sigma of ``end - start`` along x and y, (N, 2) and (N, 2) -> (N, 2).
 
-        The origin's error cancels: the two ends share one map.
+        The origin's error cancels: the two ends share one map. On a bent sheet the errors of
+        both ends count.
         """
+        if self.bend is not None:
+            ends = [self._bend_errors_mm(self.bend, points) for points in (start_px, end_px)]
+            both = np.hypot(*ends)
+            return np.column_stack([both, both])
         span_mm = self.to_mm(end_px) - self.to_mm(start_px)
         weights = np.column_stack([np.zeros(len(span_mm)), span_mm])
         return self._axis_errors_mm(weights, ends=2)
+
+    def _bend_errors_mm(self, bend: Bend, points_px: FloatArray) -> FloatArray:
+        """One sigma along one axis, (N, 2) -> (N,); NaN outside the picture."""
+        errors = bend.errors_mm(_as_points(points_px))
+        errors[np.isnan(self.to_mm(points_px)).any(axis=1)] = np.nan
+        return errors
 
     def _axis_errors_mm(self, weights: FloatArray, ends: int = 1) -> FloatArray:
         """Per-axis sigma of ``w0 origin + w1 x_step + w2 y_step`` seen in mm, (N, 3) -> (N, 2)."""
@@ -199,6 +237,7 @@ class SheetMap:
                 x_step_px=(-y[0], -y[1]),
                 y_step_px=x,
                 covariance=_as_nested(change @ covariance @ change.T),
+                bend=None if turned.bend is None else turned.bend.turned(),
                 turn_deg=(turned.turn_deg + 270) % 360,
             )
         return turned

@@ -46,6 +46,8 @@ def sheet_cautions(
         found.append(caution("scale_by_hand"))
     if not covered:
         found.append(caution("outside_seen_grid"))
+    if sheet_map.bend is not None:
+        found.append(caution("bent_sheet"))
     return [
         *found,
         *_coarse_picture(reading, sheet_map, axis, lead),
@@ -120,6 +122,9 @@ def _coarse_placing(step_mm: float) -> list[Caution]:
 
 
 def _unequal_pitch(sheet_map: SheetMap) -> list[Caution]:
+    if sheet_map.bend is not None:
+        # A tilt shortens one direction, and the map that follows the sheet takes that out.
+        return []
     across, down = sheet_map.x_pitch_px_per_mm, sheet_map.y_pitch_px_per_mm
     percent = 100.0 * (max(across, down) / min(across, down) - 1.0)
     if percent <= UNEQUAL_PERCENT:

@@ -62,6 +62,12 @@ TABLE: dict[str, CautionEntry] = {
         "The grid was not found on the picture: tilt and unevenness are not taken out.",
         NO_SOURCE,
     ),
+    "bent_sheet": CautionEntry(
+        "The sheet is tilted or bent on the picture; the grid was followed over it.",
+        "The scale differs from place to place: each mark is read on the grid around it, and "
+        "the ± contains how well the grid was seen there.",
+        "lock-in of the grid's own lines (computed)",
+    ),
     "unequal_pitch": CautionEntry(
         "Squares are {percent:.1f} % {wider} than {higher} on this picture.",
         "A stretched copy, print or photo: each direction is measured with its own scale, "

@@ -83,6 +83,8 @@ def measure_spans(reading: Reading, calipers: Sequence[Caliper]) -> list[Span]:
     for row, item in enumerate(calipers):
         axis = axis_of(item)
         refusal = _refusal(reading.calibration, item, float(span_mm[row, axis.value]))
+        if not refusal and not np.isfinite(scale_mm[row]).all():
+            refusal = "has a mark where the grid could not be followed: move it onto the grid."
         estimate = None
         if not refusal:
             estimate = _estimate(reading.calibration, item, span_mm[row], scale_mm[row], legs)

@@ -22,7 +22,10 @@ def lanes_of(caliper: Caliper) -> tuple[Lane, ...]:
 def mark_ticks(caliper: Caliper, frame: SheetFrame) -> tuple[Segment, Segment]:
     """A short stroke across the leg at each of the two marks, in picture_px: there they lie."""
     reach = (0.0, _TICK_MM) if measuring_axis(caliper.kind) else (_TICK_MM, 0.0)
-    dx, dy = frame.px_step(*reach)
+    middle_px = [
+        0.5 * (first + second) for first, second in zip(*caliper.ends_px().tolist(), strict=True)
+    ]
+    dx, dy = frame.at(*middle_px).px_step(*reach)
     first, second = (
         (end.x_px - dx, end.y_px - dy, end.x_px + dx, end.y_px + dy)
         for end in (caliper.start, caliper.end)

@@ -7,9 +7,12 @@ leg, never for a value (`has_grid` says which it is).
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+
+import numpy as np
 
 from app.reading import PicturePoint, Reading
+from imaging.sheet_map import SheetMap
 
 Vector = tuple[float, float]
 
@@ -28,6 +31,9 @@ class SheetFrame:
         Width and height of the picture.
     has_grid : bool
         False where the pitch is only a guess.
+    bent : SheetMap, optional
+        The map, where its sheet is bent: origin and steps are then those of the nearest flat
+        one, and `at` gives those of a place.
     """
 
     origin_px: Vector
@@ -35,6 +41,18 @@ class SheetFrame:
     y_step_px: Vector
     size_px: tuple[int, int]
     has_grid: bool
+    bent: SheetMap | None = None
+
+    def at(self, x_px: float, y_px: float) -> SheetFrame:
+        """The flat frame that touches a bent sheet at a picture point; a flat sheet's own."""
+        if self.bent is None:
+            return self
+        (x_mm, y_mm) = self.bent.to_mm(np.array([[x_px, y_px]]))[0].tolist()
+        if not (math.isfinite(x_mm) and math.isfinite(y_mm)):
+            return self
+        (xx, xy), (yx, yy) = self.bent.steps_px_at((x_px, y_px))
+        origin_px = (x_px - x_mm * xx - y_mm * yx, y_px - x_mm * xy - y_mm * yy)
+        return replace(self, origin_px=origin_px, x_step_px=(xx, xy), y_step_px=(yx, yy), bent=None)
 
     def mm_from_px(self, point: PicturePoint) -> Vector:
         """The place on the grid of a picture point."""
@@ -83,4 +101,11 @@ def frame_of(reading: Reading) -> SheetFrame:
     if sheet_map is None:
         pitch_px = max(size_px) / GUESSED_SHEET_MM
         return SheetFrame((0.0, 0.0), (pitch_px, 0.0), (0.0, pitch_px), size_px, False)
-    return SheetFrame(sheet_map.origin_px, sheet_map.x_step_px, sheet_map.y_step_px, size_px, True)
+    return SheetFrame(
+        sheet_map.origin_px,
+        sheet_map.x_step_px,
+        sheet_map.y_step_px,
+        size_px,
+        True,
+        None if sheet_map.bend is None else sheet_map,
+    )

@@ -70,6 +70,10 @@ def preferred_side(kind: CaliperKind) -> int:
 def caliper_shape(caliper: Caliper, frame: SheetFrame, lane: Lane) -> CaliperShape:
     """Lay a caliper's lines out around its two marks."""
     axis = measuring_axis(caliper.kind)
+    # On a bent sheet the lines run as the grid does half way between the marks.
+    frame = frame.at(
+        0.5 * (caliper.start.x_px + caliper.end.x_px), 0.5 * (caliper.start.y_px + caliper.end.y_px)
+    )
     start_mm, end_mm = frame.mm_from_px(caliper.start), frame.mm_from_px(caliper.end)
     cross_mm = (start_mm[1 - axis], end_mm[1 - axis])
     outermost_mm = min(cross_mm) if lane.side < 0 else max(cross_mm)
@@ -109,6 +113,7 @@ def aim_segments(
         if measuring_axis(kind):
             reach_mm = (_LONG_ARM_MM, _SHORT_ARM_MM)
     x, y = place.x_px, place.y_px
+    frame = frame.at(x, y)
     across, down = frame.px_step(reach_mm[0], 0.0), frame.px_step(0.0, reach_mm[1])
     return (
         (x - across[0], y - across[1], x + across[0], y + across[1]),

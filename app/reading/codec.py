@@ -6,9 +6,11 @@ import math
 from collections.abc import Callable, Mapping
 from typing import Any, TypeVar
 
+from app.reading.bend_codec import bend_to_json, nodes_from_text
 from app.reading.calibration import Calibration, Evidence, Setting
 from app.reading.marks import Caliper, CaliperKind, PicturePoint
 from app.reading.model import HandFigure, PictureIdentity, Reading
+from imaging.bend import Bend
 from imaging.sheet_map import Coverage, SheetMap
 
 Json = dict[str, Any]
@@ -118,6 +120,20 @@ def _coverage(value: object, where: str) -> Coverage:
     return coverage
 
 
+def _bend(value: object, where: str) -> Bend:
+    fields = _Fields(value, where)
+    first_px = fields.take("first_px", _pair)
+    pitch_px = fields.take("pitch_px", _number)
+    shape = fields.take("shape", _size)
+    texts = [fields.take(key, _text) for key in ("x_mm", "y_mm", "standard_error_mm")]
+    try:
+        x_mm, y_mm = (nodes_from_text(text, shape, unknown=False) for text in texts[:2])
+        errors_mm = nodes_from_text(texts[2], shape, unknown=True)
+        return Bend(first_px, pitch_px, x_mm, y_mm, errors_mm)
+    except ValueError as error:  # NodesError is one
+        raise DamagedError(where, "a lattice of nodes") from error
+
+
 def _sheet_map(value: object, where: str) -> SheetMap:
     fields = _Fields(value, where)
     return SheetMap(
@@ -133,6 +149,7 @@ def _sheet_map(value: object, where: str) -> SheetMap:
         evidence=fields.take("evidence", _several(_text)),
         turn_deg=fields.take("turn_deg", _whole),
         mirrored=fields.take("mirrored", _flag),
+        bend=fields.take_or_none("bend", _bend),
         extra=fields.rest(),
     )
 
@@ -255,6 +272,8 @@ def _sheet_map_to_json(sheet_map: SheetMap) -> Json:
         "evidence": list(sheet_map.evidence),
         "turn_deg": sheet_map.turn_deg,
         "mirrored": sheet_map.mirrored,
+        # Left out for a flat sheet: such a file is the same as before sheets could bend.
+        **({} if sheet_map.bend is None else {"bend": bend_to_json(sheet_map.bend)}),
         **sheet_map.extra,
     }
 

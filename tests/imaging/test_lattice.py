@@ -29,6 +29,7 @@ FloatArray = NDArray[np.float64]
 
 BAR_MM = 0.0125  # half a millisecond at 25 mm/s, 150 dots per inch and above
 COARSE_BAR_MM = 0.025  # one millisecond, at 100 dots per inch
+FOLLOWED_BAR_MM = 0.05  # two milliseconds, where the sheet had to be followed
 SAMPLES = Path(__file__).resolve().parent.parent.parent / "sample_scans"
 CONDITIONS: list[dict[str, Any]] = [
     *({"dpi": 150.0, "skew_deg": 1.7, "colour": colour} for colour in GRID_COLOURS),
@@ -137,30 +138,50 @@ def curled(page: RenderedPage, deepest_mm: float) -> NDArray[np.uint8]:
     return np.asarray(moved, dtype=np.uint8)
 
 
-def in_perspective(page: RenderedPage, share: float) -> NDArray[np.uint8]:
-    """The page seen at a slant: its upper edge narrower by `share` of the width."""
+def slant(page: RenderedPage, share: float) -> FloatArray:
+    """The homography of `in_perspective`."""
     height, width = page.pixels.shape[:2]
     corners = np.array([[0, 0], [width, 0], [width, height], [0, height]], dtype=np.float32)
     seen = corners.copy()
     seen[0, 0] += share * width / 2
     seen[1, 0] -= share * width / 2
     matrix = cv2.getPerspectiveTransform(corners, seen)
+    return np.asarray(matrix, dtype=np.float64)
+
+
+def seen_at(page: RenderedPage, points_px: FloatArray, share: float) -> FloatArray:
+    """Where points of the page, (N, 2), lie on its slanted picture."""
+    seen = cv2.perspectiveTransform(points_px[np.newaxis], slant(page, share))[0]
+    return np.asarray(seen, dtype=np.float64)
+
+
+def in_perspective(page: RenderedPage, share: float) -> NDArray[np.uint8]:
+    """The page seen at a slant: its upper edge narrower by `share` of the width."""
+    height, width = page.pixels.shape[:2]
+    matrix = slant(page, share)
     warped = cv2.warpPerspective(page.pixels, matrix, (width, height), borderValue=(250, 250, 250))
     return np.asarray(warped, dtype=np.uint8)
 
 
 @pytest.mark.parametrize("deepest_mm", [0.1, 0.5, 2.0])
-def test_a_curled_page_is_not_flat(deepest_mm: float) -> None:
+def test_a_curled_page_is_followed(deepest_mm: float) -> None:
     found = find_grid(as_picture(curled(flat_page(dpi=150.0), deepest_mm)))
-    assert isinstance(found, GridNotFound)
-    assert found.code == "not_flat"
+    assert isinstance(found, SheetMap)
+    assert found.bend is not None
 
 
 @pytest.mark.parametrize("share", [0.01, 0.04, 0.08])
-def test_a_page_in_perspective_is_not_flat(share: float) -> None:
-    found = find_grid(as_picture(in_perspective(flat_page(dpi=200.0), share)))
-    assert isinstance(found, GridNotFound)
-    assert found.code == "not_flat"
+def test_a_page_in_perspective_is_followed(share: float) -> None:
+    page = flat_page(dpi=200.0)
+    found = find_grid(as_picture(in_perspective(page, share)))
+    assert isinstance(found, SheetMap)
+    assert found.bend is not None
+    start_mm, end_mm = spans_on(page, seed=2)
+    start_px, end_px = (seen_at(page, page.to_px(ends), share) for ends in (start_mm, end_mm))
+    both = found.covers(start_px) & found.covers(end_px)
+    assert both.mean() > 0.9
+    measured_mm = (found.to_mm(end_px) - found.to_mm(start_px))[both]
+    assert np.percentile(np.abs(measured_mm - (end_mm - start_mm)[both]), 95.0) < FOLLOWED_BAR_MM
 
 
 def test_a_bend_far_below_the_bar_is_taken_as_flat() -> None:

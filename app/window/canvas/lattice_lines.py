@@ -1,4 +1,7 @@
-"""The fitted lattice as straight pieces, where the grid was seen. No Qt."""
+"""The fitted lattice as straight pieces, where the grid was seen. No Qt.
+
+On a bent sheet a line is many short pieces that follow it.
+"""
 
 from __future__ import annotations
 
@@ -9,6 +12,7 @@ import numpy as np
 from imaging.sheet_map import FloatArray, SheetMap
 
 BOLD_EVERY = 5
+_PIECE_MM = 2.5
 
 
 def lattice_lines(sheet_map: SheetMap, *, bold: bool) -> FloatArray:
@@ -26,6 +30,8 @@ def lattice_lines(sheet_map: SheetMap, *, bold: bool) -> FloatArray:
         Pieces (x1, y1, x2, y2) in picture_px; they end within half a coverage cell of where
         the grid was last seen.
     """
+    if sheet_map.bend is not None:
+        return np.concatenate([_bent_pieces(sheet_map, axis, bold=bold) for axis in (0, 1)])
     steps_px = np.array([sheet_map.x_step_px, sheet_map.y_step_px])
     return np.concatenate(
         [
@@ -38,6 +44,30 @@ def lattice_lines(sheet_map: SheetMap, *, bold: bool) -> FloatArray:
             for numbers in [_line_numbers(sheet_map, axis, bold=bold)]
         ]
     )
+
+
+def _bent_pieces(sheet_map: SheetMap, axis: int, *, bold: bool) -> FloatArray:
+    """Lines across one axis of a bent sheet, in pieces both ends of which were seen."""
+    cells = sheet_map.coverage.cells()
+    rows, columns = np.nonzero(cells)
+    if rows.size == 0:
+        return np.empty((0, 4))
+    centres_px = (np.column_stack([columns, rows]) + 0.5) * sheet_map.coverage.cell_px - 0.5
+    seen_mm = sheet_map.to_mm(np.minimum(centres_px, np.array(sheet_map.picture_size_px) - 1.0))
+    low, high = seen_mm.min(axis=0) - _PIECE_MM, seen_mm.max(axis=0) + _PIECE_MM
+    numbers = np.arange(math.ceil(low[axis]), math.floor(high[axis]) + 1)
+    numbers = numbers[(numbers % BOLD_EVERY == 0) == bold]
+    along = np.arange(low[1 - axis], high[1 - axis] + _PIECE_MM, _PIECE_MM)
+    line, place = np.meshgrid(numbers, along, indexing="ij")
+    points_mm = np.stack([place, line] if axis else [line, place], axis=-1).reshape(-1, 2)
+    points_px = sheet_map.to_px(points_mm)
+    # The last cells reach past the picture's edge.
+    on_picture = np.isfinite(sheet_map.to_mm(points_px)).all(axis=1)
+    seen = (sheet_map.covers(points_px) & on_picture).reshape(line.shape)
+    points_px = points_px.reshape(*line.shape, 2)
+    both = seen[:, :-1] & seen[:, 1:]
+    pieces: FloatArray = np.hstack([points_px[:, :-1][both], points_px[:, 1:][both]])
+    return pieces
 
 
 def _line_numbers(sheet_map: SheetMap, axis: int, *, bold: bool) -> FloatArray:

@@ -36,8 +36,8 @@ def leg_moved(
     stretch = 1.0 if tooth == 0 else (caliper.teeth - 1) / tooth
     along_mm *= stretch
     unit = (0.0, along_mm) if measuring_axis(caliper.kind) else (along_mm, 0.0)
-    step_px = frame.px_step(*unit)
     before = caliper.start if tooth == 0 else caliper.end
+    step_px = frame.at(before.x_px, before.y_px).px_step(*unit)
     share = frame.share_inside(before, step_px)
     there = frame.clamped(before.x_px + share * step_px[0], before.y_px + share * step_px[1])
     there = replace(there, step_px=hand_step_px * stretch)

@@ -25,6 +25,7 @@ from tests.app.calculator.sheets import (
     reading_of,
     time,
 )
+from tests.bends import bent
 
 
 def said(
@@ -212,3 +213,9 @@ def test_a_number_shown_on_the_other_side_of_its_limit(value: float, text: str |
 def test_no_rounding_caution_where_the_digits_shown_tell() -> None:
     assert rounding(estimate(119.6, 0.8), 120.0) == []
     assert rounding(estimate(-0.2, 8.0), 60.0) == []
+
+
+def test_a_bent_sheet_says_so_and_not_that_its_squares_are_unequal() -> None:
+    tilted = exact_map(8.0, 6.0)
+    assert "unequal_pitch" in said(tilted)
+    assert said(bent(tilted)).keys() == {"bent_sheet"}

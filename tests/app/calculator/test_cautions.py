@@ -19,6 +19,7 @@ from tests.app.calculator.sheets import (
     rr_chain,
     time,
 )
+from tests.bends import bent
 
 STATUSES = ("found", "from memory", "computed", NO_SOURCE)
 
@@ -50,6 +51,7 @@ def other_readings() -> list[Reading]:
     marks = [in_steps(time("qt", 10.0), 0.5), height("r_height", 9.0)]
     readings = [
         reading_of(*marks, sheet_map=doubtful, settings=calibration(confirmed=False)),
+        reading_of(time("qt", 10.0), sheet_map=bent(exact_map(8.0, 8.0))),
     ]
     for size_mm in (2.0, 5.0):
         readings.append(

@@ -11,6 +11,7 @@ import pytest
 from app.calculator.spans import NO_SCALE, Span, measure_spans
 from app.calculator.uncertainty import Axis, leg_error
 from app.reading import Caliper, CaliperKind, PicturePoint, Setting
+from imaging.bend import Bend
 from tests.app.calculator.sheets import (
     PX_PER_MM,
     between,
@@ -22,6 +23,7 @@ from tests.app.calculator.sheets import (
     rr_chain,
     time,
 )
+from tests.bends import bent
 
 
 def refusal(caliper: Caliper, speed: float = 25.0, gain: float = 10.0) -> str:
@@ -178,3 +180,20 @@ def test_the_chest_leads_gain_is_used_in_the_chest_leads() -> None:
     assert limb.estimate is not None
     assert chest.estimate is not None
     assert (limb.estimate.value, chest.estimate.value) == (0.5, 1.0)
+
+
+def test_a_mark_where_a_bent_sheet_was_not_followed_is_refused() -> None:
+    sheet_map = bent(exact_map(8.0, 8.0))
+    assert sheet_map.bend is not None
+    errors = sheet_map.bend.standard_error_mm.copy()
+    errors[:, :10] = np.nan
+    bend = Bend((0.0, 0.0), 32.0, sheet_map.bend.x_mm, sheet_map.bend.y_mm, errors)
+    reading = replace(reading_of(), sheet_map=replace(sheet_map, bend=bend))
+    y_mm, step_mm = 300.0 / PX_PER_MM, 80.0 / PX_PER_MM
+    marks = [
+        between("qrs", (x_px / PX_PER_MM, y_mm), (x_px / PX_PER_MM + step_mm, y_mm))
+        for x_px in (100.0, 600.0)
+    ]
+    lost, followed = measure_spans(reading, marks)
+    assert (lost.estimate is None, followed.refusal) == (True, "")
+    assert lost.refusal.startswith("has a mark where the grid could not be followed")

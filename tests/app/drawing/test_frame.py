@@ -11,6 +11,7 @@ from app.drawing.frame import SheetFrame, frame_of
 from app.reading import PicturePoint
 from tests.app.reading_examples import example_map, example_reading
 from tests.app.window.canvas.hands import blank_picture, reading_of
+from tests.bends import bent
 
 SKEWED = SheetFrame((13.0, 7.0), (9.8, 0.7), (-0.6, 10.1), (2000, 1000), has_grid=True)
 
@@ -74,3 +75,27 @@ def test_from_the_edge_outward_there_is_no_step() -> None:
 def test_the_smaller_pitch_is_that_of_the_closer_lines() -> None:
     frame = SheetFrame((0.0, 0.0), (0.0, 6.0), (-8.0, 0.0), (100, 80), has_grid=True)
     assert frame.pitch_px_per_mm == 6.0
+
+
+def test_on_a_bent_sheet_it_touches_the_grid_at_a_place() -> None:
+    sheet_map = bent(example_map())
+    whole = frame_of(reading_of(blank_picture(), sheet_map=sheet_map))
+    for x_px, y_px in ((150.0, 120.0), (1000.0, 700.0)):
+        frame = whole.at(x_px, y_px)
+        here_mm = sheet_map.to_mm(np.array([[x_px, y_px]]))[0]
+        assert frame.mm_from_px(PicturePoint(x_px, y_px)) == pytest.approx(tuple(here_mm))
+        beside_px = np.array([[x_px + 5.0, y_px - 3.0]])
+        beside_mm = sheet_map.to_mm(beside_px)[0]
+        assert frame.mm_from_px(PicturePoint(*beside_px[0])) == pytest.approx(
+            tuple(beside_mm), abs=2e-3
+        )
+
+
+def test_a_flat_sheet_has_one_frame_everywhere() -> None:
+    frame = frame_of(reading_of(blank_picture(), sheet_map=example_map()))
+    assert frame.at(900.0, 5.0) is frame
+
+
+def test_off_a_bent_sheet_s_picture_the_nearest_flat_frame_stands_in() -> None:
+    frame = frame_of(reading_of(blank_picture(), sheet_map=bent(example_map())))
+    assert frame.at(-500.0, 5.0) is frame

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from dataclasses import replace
 
+import numpy as np
 import pytest
 
-from app.drawing.frame import SheetFrame
+from app.drawing.frame import SheetFrame, frame_of
 from app.drawing.shape import (
     BEYOND_BAR_MM,
     BEYOND_MARK_MM,
@@ -15,6 +16,8 @@ from app.drawing.shape import (
     caliper_shape,
 )
 from app.reading import Caliper, CaliperKind, PicturePoint
+from tests.app.reading_examples import example_map, example_reading
+from tests.bends import bent
 
 UPRIGHT = SheetFrame((0.0, 0.0), (10.0, 0.0), (0.0, 10.0), (2000, 1000), has_grid=True)
 SKEWED = SheetFrame((13.0, 7.0), (9.8, 0.7), (-0.6, 10.1), (2000, 1000), has_grid=True)
@@ -105,3 +108,14 @@ def test_a_caliper_marked_backwards_has_the_same_lines() -> None:
     backward = replace(forward, start=forward.end, end=forward.start)
     there, back = (caliper_shape(one, SKEWED, Lane()) for one in (forward, backward))
     assert there.legs == tuple(reversed(back.legs))
+
+
+def test_on_a_bent_sheet_the_legs_run_as_the_grid_does_there() -> None:
+    sheet_map = bent(example_map())
+    reading = replace(example_reading(), sheet_map=sheet_map)
+    for start, end in (((150, 150), (230, 140)), ((1000, 700), (1080, 712))):
+        shape = caliper_shape(caliper(CaliperKind.TIME, start, end), frame_of(reading), Lane())
+        for leg in shape.legs:
+            ends_mm = sheet_map.to_mm(np.array(leg).reshape(2, 2))
+            assert abs(ends_mm[1, 0] - ends_mm[0, 0]) < 0.1
+            assert abs(ends_mm[1, 1] - ends_mm[0, 1]) > 8.0

@@ -11,6 +11,7 @@ import pytest
 from app.window.canvas.lattice_lines import lattice_lines
 from imaging.sheet_map import Coverage, FloatArray, SheetMap
 from tests.app.reading_examples import example_map
+from tests.bends import bent
 
 SIZE_PX = (1200, 900)
 
@@ -90,3 +91,22 @@ def test_a_page_of_twelve_megapixels_is_laid_out_at_once() -> None:
     # About 0.1 s on a quiet machine; line by line it was 7 s.
     assert time.perf_counter() - begun < 1.5
     assert count > 800
+
+
+@pytest.mark.parametrize("bold", [True, False])
+def test_on_a_bent_sheet_every_piece_follows_its_line(bold: bool) -> None:
+    sheet_map = bent(example_map(SIZE_PX))
+    places_mm = ends_mm(sheet_map, lattice_lines(sheet_map, bold=bold))
+    assert len(places_mm) > 500
+    apart = np.abs(places_mm[:, 1] - places_mm[:, 0])
+    across = np.argmin(apart, axis=1)
+    on_line = places_mm[np.arange(len(places_mm)), :, across]
+    assert np.abs(on_line - np.round(on_line)).max() < 1e-6
+    assert ((np.round(on_line) % 5 == 0) == bold).all()
+    assert apart.max() < 3.0
+
+
+def test_where_nothing_of_a_bent_sheet_was_seen_there_are_no_lines() -> None:
+    nowhere = Coverage.from_cells(np.zeros((9, 12), dtype=bool), 100.0)
+    sheet_map = replace(bent(example_map(SIZE_PX)), coverage=nowhere)
+    assert lattice_lines(sheet_map, bold=True).shape == (0, 4)
