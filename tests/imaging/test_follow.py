@@ -4,48 +4,15 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from numpy.typing import NDArray
 
 from imaging import GridNotFound, SheetMap, find_grid
 from imaging.follow import strain_of
 from tests.measure_grid import as_picture
+from tests.measure_photos import LOST_MM, covered_errors_mm, span_error_95_mm
 from tests.no_grid import no_grid_pictures
 from tests.photos import Photo, photo, quick_set
 
-FloatArray = NDArray[np.float64]
-
 SPAN_BAR_MM = 0.05
-LOST_MM = 0.5
-
-
-def covered_errors_mm(found: SheetMap, taken: Photo) -> tuple[FloatArray, FloatArray, float]:
-    """Picture and error of covered visible grid points, (N, 2) each, and the covered share.
-
-    Which way up the sheet is, a grid does not tell: of the eight turns the nearest counts.
-    Whole large squares between the origins are taken out, where 1 mm is certain.
-    """
-    points_mm = taken.sheets[0].grid_points_mm(2.0)
-    points_px = taken.to_px(points_mm)
-    covered = found.covers(points_px)
-    points_mm, points_px = points_mm[covered], points_px[covered]
-    seen_mm = found.to_mm(points_px)
-    step_mm = 5.0 if found.scale_is_certain else 1.0
-    tried = []
-    for swapped in (seen_mm, seen_mm[:, ::-1]):
-        for signs in ((1, 1), (1, -1), (-1, 1), (-1, -1)):
-            errors = swapped * signs - points_mm
-            tried.append(errors - step_mm * np.round(np.median(errors, axis=0) / step_mm))
-    best = min(tried, key=lambda errors: float(np.median(np.abs(errors))))
-    return points_px, best, float(covered.mean())
-
-
-def span_error_95_mm(points_px: FloatArray, errors_mm: FloatArray, px_per_mm: float) -> float:
-    """95th percentile of the error of spans of 5 to 50 mm."""
-    rng = np.random.default_rng(0)
-    start, end = rng.integers(0, len(errors_mm), (2, 20000))
-    apart_mm = np.hypot(*(points_px[start] - points_px[end]).T) / px_per_mm
-    fits = (apart_mm >= 5.0) & (apart_mm <= 50.0)
-    return float(np.percentile(np.abs(errors_mm[start] - errors_mm[end])[fits], 95.0))
 
 
 def _hold(taken: Photo) -> None:
