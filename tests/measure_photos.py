@@ -61,8 +61,9 @@ class PhotoScore:
 def covered_errors_mm(found: SheetMap, taken: Photo) -> tuple[FloatArray, FloatArray, float]:
     """Picture and error of covered visible grid points, (N, 2) each, and the covered share.
 
-    Of several sheets in the photo the one counts of which most is covered. Which way up the sheet is, a grid does not tell: of the eight turns the nearest counts.
-    Whole large squares between the origins are taken out, where 1 mm is certain.
+    Of several sheets in the photo the one counts of which most is covered. Which way up the
+    sheet is, a grid does not tell: of the eight turns the nearest counts. Whole large squares
+    between the origins are taken out, where 1 mm is certain.
     """
     seen = []
     for sheet in taken.sheets:
