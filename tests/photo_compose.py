@@ -169,7 +169,8 @@ def _cast_shadow(canvas: Canvas, view: View, lamp: FloatArray) -> None:
         return
     small = (int(high[0] - low[0]) // SHADOW_SHRINK + 1, int(high[1] - low[1]) // SHADOW_SHRINK + 1)
     mask = np.zeros((small[1], small[0]), dtype=np.uint8)
-    corners = np.rint((outline - low) / SHADOW_SHRINK).astype(np.int32)
+    # A corner right before the lens lies very far out: more than a whole number can say.
+    corners = np.rint(np.clip((outline - low) / SHADOW_SHRINK, -3e4, 3e4)).astype(np.int32)
     cv2.fillPoly(mask, [corners], 120)
     mask = cv2.GaussianBlur(mask, (0, 0), max(reach_px / SHADOW_SHRINK, 0.6))
     size = (int(high[0] - low[0]), int(high[1] - low[1]))
