@@ -46,7 +46,7 @@ NOT_A_MILLIMETRE_GRID = GridNotFound(
 )
 TOO_COARSE = GridNotFound(
     "The small squares are fewer than three pixels wide; scan the page again at 150 dots per "
-    "inch or more.",
+    "inch or more, or take the picture from nearer.",
     "too_coarse",
 )
 

@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from imaging.bend import Bend
+from imaging.choose import TOO_COARSE
 from imaging.errors import GridNotFound
 from imaging.flat_view import FlatView, flat_view
 from imaging.ink import GridInk
@@ -57,10 +58,6 @@ NOT_FOLLOWED = GridNotFound(
     "The grid lines could not be followed over the sheet; take the picture again from above "
     "and nearer, with even light, or scan the page.",
     "not_followed",
-)
-TOO_COARSE = GridNotFound(
-    "The small squares are fewer than three pixels wide; take the picture from nearer.",
-    "too_coarse",
 )
 
 

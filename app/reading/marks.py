@@ -99,7 +99,3 @@ class Caliper:
     def height_mm(self, sheet_map: SheetMap) -> float:
         """Height of the end above the start; positive is up on the paper."""
         return -self.span_mm(sheet_map)[1]
-
-    def tooth_pitch_mm(self, sheet_map: SheetMap) -> float:
-        """Distance of neighbouring teeth along the paper."""
-        return self.width_mm(sheet_map) / (self.teeth - 1)

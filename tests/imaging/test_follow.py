@@ -13,6 +13,7 @@ from tests.no_grid import no_grid_pictures
 from tests.photos import Photo, photo, quick_set
 
 SPAN_BAR_MM = 0.05
+STILL_REFUSED = 9001
 
 
 def _hold(taken: Photo) -> None:
@@ -79,10 +80,9 @@ def test_squares_of_another_size_than_those_around_are_noticed() -> None:
 
 @pytest.mark.slow
 def test_the_quick_set_is_followed() -> None:
-    """No wrong factor said with certainty, no point lost; one photo (seed 9001) is refused."""
-    scores = [score_photo(taken) for taken in quick_set()]
-    mapped = [score for score in scores if not score.refused]
-    assert len(mapped) >= len(scores) - 1
+    """Nothing refused, no wrong factor said with certainty, no point lost."""
+    mapped = [score_photo(taken) for taken in quick_set() if taken.seed != STILL_REFUSED]
+    assert not any(score.refused for score in mapped)
     assert not any(score.certain and score.wrong_factor for score in mapped)
     right = [score for score in mapped if not score.wrong_factor]
     assert len(right) >= len(mapped) - 1  # 5 mm lines taken for 1 mm ones: said to be uncertain
@@ -90,3 +90,10 @@ def test_the_quick_set_is_followed() -> None:
     assert np.median([score.span_95_mm for score in right]) < 0.02
     assert max(score.span_95_mm for score in right) < SPAN_BAR_MM
     assert np.median([score.covered for score in right]) > 0.94
+
+
+@pytest.mark.slow
+@pytest.mark.xfail(reason="its lines are not yet told from other rulings")
+def test_the_last_of_the_quick_set_is_followed_too() -> None:
+    taken = next(taken for taken in quick_set() if taken.seed == STILL_REFUSED)
+    assert not score_photo(taken).refused

@@ -30,11 +30,6 @@ def test_width_has_no_sign_and_height_is_positive_upwards() -> None:
     assert item.height_mm(FLAT_10_PX_PER_MM) == pytest.approx(3.0)
 
 
-def test_a_comb_of_five_teeth_has_four_spaces() -> None:
-    item = caliper((100.0, 100.0), (300.0, 100.0), teeth=5)
-    assert item.tooth_pitch_mm(FLAT_10_PX_PER_MM) == pytest.approx(5.0)
-
-
 def test_a_leg_off_the_picture_measures_nothing() -> None:
     assert math.isnan(caliper((100.0, 100.0), (900.0, 100.0)).width_mm(FLAT_10_PX_PER_MM))
 
